@@ -34,6 +34,9 @@ LEAST_SLOPE = 1e-9
 LEAST_CAMBER = 1e-9
 """Camber below this is that of a symmetric section and has no place [chords]."""
 
+BESIDE_NOSE = 1e-9
+"""Parameter at which the curvature of one side at the nose is taken [-]."""
+
 GAUSS_NODES = 32
 """Quadrature nodes an analytic piece; exact for the areas of all closed-form sides."""
 

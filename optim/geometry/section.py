@@ -171,8 +171,12 @@ class Section:
 
     @cached_property
     def nose_radius(self) -> float:
-        """Radius of curvature at the nose, t = 0 [chords]."""
-        return float(1.0 / self.curvature(np.array([0.0]))[0])
+        """Radius of curvature at the nose, t = 0 [chords].
+
+        The smaller one if the sides have two; zero if the nose is not round.
+        """
+        sharpest = float(self.curvature(np.array([-1.0, 1.0]) * measures.BESIDE_NOSE).max())
+        return 1.0 / sharpest if sharpest > 0.0 else 0.0
 
     @cached_property
     def trailing_edge_gap(self) -> float:
