@@ -3,6 +3,7 @@
 import json
 import subprocess
 import sys
+import warnings
 
 import numpy as np
 import pytest
@@ -55,6 +56,13 @@ def as_stored(state):
     return SearchState(json.dumps(json.loads(state.json)), arrays)
 
 
+def same_state(one, other):
+    """Tell whether two states are equal to the last bit."""
+    return one.json == other.json and {k: v.tobytes() for k, v in one.arrays.items()} == {
+        k: v.tobytes() for k, v in other.arrays.items()
+    }
+
+
 @pytest.mark.parametrize("algorithm", ALGORITHMS)
 @pytest.mark.parametrize(
     "evaluate", [smooth, half_fail_alike, nothing_is_feasible, all_alike], ids=lambda f: f.__name__
@@ -80,11 +88,10 @@ class TestEveryAlgorithm:
         record = continue_search(first, evaluate, stop)
         second = Search.restore(SPACE, algorithm, 12, as_stored(first.state()))
         assert second.generation == stop
+        assert same_state(second.state(), first.state())
         record += continue_search(second, evaluate, 26 - stop)
         assert equal_records(record, uninterrupted)
-        assert second.state().json == whole.state().json
-        for name, array in whole.state().arrays.items():
-            assert second.state().arrays[name].tobytes() == array.tobytes()
+        assert same_state(second.state(), whole.state())
 
     def test_asked_designs_are_new(self, algorithm, evaluate, continue_search):
         """None is asked twice in a generation, and none that still lives."""
@@ -95,6 +102,27 @@ class TestEveryAlgorithm:
             assert len(np.unique(np.vstack([living, designs]), axis=0)) == len(living) + len(
                 designs
             )
+
+
+@pytest.mark.parametrize("algorithm", ALGORITHMS)
+def test_restored_search_remembers_what_has_died(
+    algorithm, published_problem, continue_search, equal_records
+):
+    """On DTLZ2 a run diverges if the normalisation that NSGA-III keeps is not brought back."""
+    problem = published_problem("dtlz2")
+    uninterrupted = continue_search(Search(problem.space, algorithm, 12, 4), problem.evaluate, 40)
+    first = Search(problem.space, algorithm, 12, 4)
+    record = continue_search(first, problem.evaluate, 12)
+    second = Search.restore(problem.space, algorithm, 12, as_stored(first.state()))
+    assert equal_records(record + continue_search(second, problem.evaluate, 28), uninterrupted)
+
+
+@pytest.mark.parametrize("algorithm", ALGORITHMS)
+def test_warnings_of_the_process_stay_as_they_were(algorithm, run_search):
+    """The library's normalisation switches all of them off (pymoo 0.6.2, nsga3.py)."""
+    before = list(warnings.filters)
+    run_search(SPACE, smooth, algorithm, 12, 3)
+    assert warnings.filters == before
 
 
 @pytest.mark.parametrize("algorithm", ALGORITHMS)
