@@ -64,6 +64,7 @@ class Journal(JournalView):
         super().__init__(connection, journal_path(run))
         self.run = run
         self._claim = claim
+        self._closed = False
         with self._read() as db:
             db.execute("PRAGMA journal_mode = WAL")
             db.execute("PRAGMA synchronous = FULL")
@@ -199,7 +200,13 @@ class Journal(JournalView):
             put_seal(db, replace(seal, ending=ending))
 
     def close(self) -> None:
-        """Close the journal, keep it, and let another process write the run."""
+        """Close the journal, keep it, and let another process write the run.
+
+        A second time, or after `remove`, it does nothing.
+        """
+        if self._closed:
+            return
+        self._closed = True
         # One plain file, readable from a read-only medium; a reader at work may prevent it.
         with contextlib.suppress(sqlite3.OperationalError):
             self._db.execute("PRAGMA busy_timeout = 0")
@@ -209,6 +216,7 @@ class Journal(JournalView):
 
     def remove(self) -> None:
         """Close the journal and delete it: RUN.h5 has been verified to hold everything."""
+        self._closed = True
         self._db.close()
         for suffix in ("", "-wal", "-shm"):
             self.path.with_name(self.path.name + suffix).unlink(missing_ok=True)
