@@ -34,6 +34,8 @@ class ObjectiveSpec:
         The quantity's name.
     shares : tuple of (str, float)
         Condition and share, the shares adding to one; empty for a quantity of the section.
+    at : float or None
+        Place along the chord of a quantity that needs one [x/c].
     """
 
     name: str
@@ -41,6 +43,7 @@ class ObjectiveSpec:
     unit: str
     quantity: str
     shares: tuple[tuple[str, float], ...] = ()
+    at: float | None = None
 
     def value(self, by_condition: Mapping[str, float]) -> float:
         """Return the mean of the quantity over the shares, not-a-number if any part is missing."""
@@ -53,12 +56,6 @@ class ObjectiveSpec:
     def minimised(self, value: float) -> float:
         """Return the value as something to make smaller; the same turns it back."""
         return -value if self.sense == "maximise" else value
-
-
-def shares_of(weights: Mapping[str, float]) -> tuple[tuple[str, float], ...]:
-    """Return the weights divided by their sum, in the order given."""
-    total = sum(weights.values())
-    return tuple((condition, weight / total) for condition, weight in weights.items())
 
 
 def weighted_mean(values: Sequence[float], shares: Sequence[float], *, harmonic: bool) -> float:

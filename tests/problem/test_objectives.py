@@ -8,7 +8,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from optim.problem.objectives import ObjectiveSpec, shares_of, weighted_mean
+from optim.problem.objectives import ObjectiveSpec, weighted_mean
 
 GLIDE = ObjectiveSpec(
     name="lift_to_drag@survey+loiter",
@@ -27,10 +27,6 @@ def test_lift_to_drag_is_averaged_as_drag_per_lift():
 
 def test_other_quantities_are_averaged_as_they_are():
     assert weighted_mean([0.01, 0.02], [0.25, 0.75], harmonic=False) == pytest.approx(0.0175)
-
-
-def test_shares_add_to_one_whatever_the_weights():
-    assert shares_of({"a": 60.0, "b": 30.0, "c": 10.0}) == (("a", 0.6), ("b", 0.3), ("c", 0.1))
 
 
 @given(st.lists(st.floats(1.0, 300.0), min_size=1, max_size=5))
