@@ -40,21 +40,9 @@ _SENTENCES = {
 }
 
 
-@dataclass(frozen=True)
-class Stall:
-    """How little the hypervolume may grow.
-
-    Attributes
-    ----------
-    generations : int
-        Length of the window, at least 1.
-    growth : float
-        The run has stalled if the hypervolume grew by less than this fraction of its present
-        value over the window [-].
-    """
-
-    generations: int
-    growth: float
+LEAST_GROWTH = 1e-3
+"""Growth of the hypervolume over the window, as a fraction of its present value, below which it
+counts as none [-]; rule of thumb: a search always finds a little more of what it has."""
 
 
 @dataclass(frozen=True)
@@ -101,15 +89,15 @@ class Limits:
         Working time in all [s].
     until : float or None
         Moment [s since 1970, UTC], from `next_time_of_day`.
-    stall : Stall or None
-        Least growth of the hypervolume.
+    stall : int or None
+        Generations over which the hypervolume may stand still, at least 1.
     """
 
     generations: int | None = None
     evaluations: int | None = None
     wall_time: float | None = None
     until: float | None = None
-    stall: Stall | None = None
+    stall: int | None = None
 
     def overridden(self, generations: int | None, until: float | None) -> Limits:
         """Return the limits with what was given by hand for this session.
@@ -139,9 +127,29 @@ class Limits:
         }
         return next((ending for ending, here in reached.items() if here), None)
 
+    def remaining(self, progress: Progress) -> float | None:
+        """Return the time that the run will take at most, judged by its generations so far.
 
-def stalled(hypervolumes: Sequence[float], stall: Stall) -> bool:
-    """Tell whether the hypervolume grew too little over the window.
+        Returns
+        -------
+        float or None
+            None before the first generation and where nothing but a stall ends the run [s].
+        """
+        if not progress.generations:
+            return None
+        mean = progress.elapsed / progress.generations
+        a_generation = progress.evaluations / progress.generations
+        left = [
+            _left(self.generations, progress.generations, mean),
+            _left(self.evaluations, progress.evaluations, mean / a_generation),
+            _left(self.wall_time, progress.elapsed, 1.0),
+            _left(self.until, progress.now, 1.0),
+        ]
+        return min((time for time in left if time is not None), default=None)
+
+
+def stalled(hypervolumes: Sequence[float], window: int) -> bool:
+    """Tell whether the hypervolume has stopped growing.
 
     A window that begins before the first feasible design cannot have stalled: there the search
     is looking for feasible designs, and the hypervolume says nothing about it.
@@ -150,13 +158,13 @@ def stalled(hypervolumes: Sequence[float], stall: Stall) -> bool:
     ----------
     hypervolumes : sequence of float
         One a generation.
-    stall : Stall
-        Window and least growth.
+    window : int
+        Generations over which it must have grown by `LEAST_GROWTH`.
     """
-    if len(hypervolumes) <= stall.generations:
+    if len(hypervolumes) <= window:
         return False
-    before, now = hypervolumes[-1 - stall.generations], hypervolumes[-1]
-    return before > 0.0 and now - before < stall.growth * now
+    before, now = hypervolumes[-1 - window], hypervolumes[-1]
+    return before > 0.0 and now - before < LEAST_GROWTH * now
 
 
 def next_time_of_day(time_of_day: str, now: datetime) -> float:
@@ -195,3 +203,7 @@ def _reached(done: int, limit: int | None) -> bool:
 
 def _overrun(now: float, next_duration: float, limit: float | None) -> bool:
     return limit is not None and now + next_duration >= limit
+
+
+def _left(limit: float | None, done: float, each: float) -> float | None:
+    return None if limit is None else max(0.0, limit - done) * each
