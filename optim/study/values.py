@@ -1,0 +1,435 @@
+"""The kinds of value a key of a study may hold: how each is read, what it accepts, its JSON schema.
+
+A `Value` stands in the annotation of a field, so that type, unit and range of a key are written in
+one place; pydantic, the JSON schema and the guide all read them from there.
+"""
+
+from __future__ import annotations
+
+import re
+from abc import ABC, abstractmethod
+from collections.abc import Mapping
+from dataclasses import dataclass
+from difflib import get_close_matches
+from typing import Any, Literal
+
+from pydantic import GetCoreSchemaHandler, GetJsonSchemaHandler
+from pydantic_core import CoreSchema, PydanticCustomError, core_schema
+
+from optim.study.units import (
+    FRACTION,
+    LENGTH,
+    NUMBER,
+    Dimension,
+    UnitError,
+    read,
+    read_either,
+    shown,
+)
+
+MEASURE_PATTERN = r"^\s*[+-]?([0-9]+\.?[0-9]*|\.[0-9]+)([eE][+-]?[0-9]{1,3})?\s*[^0-9].*$"
+"""A text with a number and a unit, for editors; the units themselves are in `units`."""
+
+SMALLEST_LIKENESS = 0.6
+"""How alike two names must be for "did you mean", of 1 (difflib's measure); chosen by use."""
+
+NAMES_OF_DEVICES = frozenset(
+    {"con", "prn", "aux", "nul"} | {f"{d}{n}" for d in ("com", "lpt") for n in range(1, 10)}
+)
+"""File names that Windows keeps for devices, with any suffix."""
+
+
+def did_you_mean(name: str, known: list[str]) -> str:
+    """Return "; did you mean x?" for the nearest known name, or nothing if none is near."""
+    near = get_close_matches(name, known, n=1, cutoff=SMALLEST_LIKENESS)
+    return f"; did you mean {near[0]}?" if near else ""
+
+
+def refusal(error: UnitError) -> PydanticCustomError:
+    """Return what pydantic collects for a value that was refused."""
+    context = {"sentence": str(error), "below": error.below}
+    return PydanticCustomError("value", "{sentence}", context)
+
+
+class Value(ABC):
+    """How one kind of value is read."""
+
+    @property
+    @abstractmethod
+    def accepted(self) -> str:
+        """What may be written, for sentences and for the guide."""
+
+    @abstractmethod
+    def read(self, value: object) -> Any:  # noqa: ANN401  each kind has its own type
+        """Return the value as the study keeps it; UnitError says what is wrong with it."""
+
+    @abstractmethod
+    def json_schema(self) -> dict[str, Any]:
+        """JSON Schema of what may be written."""
+
+    def write(self, value: Any) -> Any:  # noqa: ANN401
+        """Return plain data that `read` turns into `value` again."""
+        return value
+
+    def _read_for_pydantic(self, value: object) -> Any:  # noqa: ANN401
+        try:
+            return self.read(value)
+        except UnitError as error:
+            raise refusal(error) from error
+
+    def __get_pydantic_core_schema__(
+        self, source: object, handler: GetCoreSchemaHandler
+    ) -> CoreSchema:
+        """Let pydantic read and write by this object alone."""
+        return core_schema.no_info_plain_validator_function(
+            self._read_for_pydantic,
+            serialization=core_schema.plain_serializer_function_ser_schema(self.write),
+        )
+
+    def __get_pydantic_json_schema__(
+        self, core: CoreSchema, handler: GetJsonSchemaHandler
+    ) -> dict[str, Any]:
+        """Let pydantic write the schema of this object."""
+        return self.json_schema()
+
+
+@dataclass(frozen=True)
+class Measure(Value):
+    """A number with a unit, kept in SI, within a range."""
+
+    dimension: Dimension = NUMBER
+    at_least: float | None = None
+    more_than: float | None = None
+    at_most: float | None = None
+
+    @property
+    def accepted(self) -> str:
+        """Kind, unit and range."""
+        return ", ".join(filter(None, (self.dimension.accepted, self.range)))
+
+    @property
+    def range(self) -> str:
+        """The range in words; empty if every number is accepted."""
+        words = (
+            ("at least", self.at_least), ("more than", self.more_than), ("at most", self.at_most),
+        )  # fmt: skip
+        return " and ".join(f"{w} {self.dimension.stated(v)}" for w, v in words if v is not None)
+
+    def read(self, value: object) -> float:
+        """Return the SI value."""
+        number = read(value, self.dimension)
+        if not self._within(number):
+            unit = self.dimension.unit
+            taken = f" (taken in {unit})" if unit not in {"", "1"} and self._is_plain(value) else ""
+            raise UnitError(f"{shown(value)}{taken} is out of range; accepted is {self.accepted}.")
+        return number
+
+    @staticmethod
+    def _is_plain(value: object) -> bool:
+        return not isinstance(value, str)
+
+    def _within(self, number: float) -> bool:
+        return not (
+            (self.at_least is not None and number < self.at_least)
+            or (self.more_than is not None and number <= self.more_than)
+            or (self.at_most is not None and number > self.at_most)
+        )
+
+    def json_schema(self) -> dict[str, Any]:
+        """A number in range, or a text with a unit."""
+        ends = (
+            ("minimum", self.at_least), ("exclusiveMinimum", self.more_than),
+            ("maximum", self.at_most),
+        )  # fmt: skip
+        number = {"type": "number"} | {key: end for key, end in ends if end is not None}
+        if not self.dimension.unit:
+            return number
+        return {"anyOf": [number, {"type": "string", "pattern": MEASURE_PATTERN}]}
+
+
+@dataclass(frozen=True)
+class Count(Value):
+    """A whole number within a range."""
+
+    at_least: int
+    at_most: int
+    even: bool = False
+
+    @property
+    def accepted(self) -> str:
+        """Kind and range."""
+        kind = "an even whole number" if self.even else "a whole number"
+        return f"{kind} from {self.at_least} to {self.at_most}"
+
+    def read(self, value: object) -> int:
+        """Return the number."""
+        if (
+            not isinstance(value, int)
+            or isinstance(value, bool)
+            or not self.at_least <= value <= self.at_most
+            or (self.even and value % 2)
+        ):
+            raise UnitError(f"{shown(value)} is not accepted; accepted is {self.accepted}.")
+        return value
+
+    def json_schema(self) -> dict[str, Any]:
+        """An integer in range."""
+        schema: dict[str, Any] = {
+            "type": "integer", "minimum": self.at_least, "maximum": self.at_most
+        }  # fmt: skip
+        return schema | ({"multipleOf": 2} if self.even else {})
+
+
+@dataclass(frozen=True)
+class Flag(Value):
+    """true or false."""
+
+    @property
+    def accepted(self) -> str:
+        """The two words."""
+        return "true or false"
+
+    def read(self, value: object) -> bool:
+        """Return the flag."""
+        if not isinstance(value, bool):
+            raise UnitError(f"{shown(value)} is not accepted; accepted is {self.accepted}.")
+        return value
+
+    def json_schema(self) -> dict[str, Any]:
+        """A boolean."""
+        return {"type": "boolean"}
+
+
+@dataclass(frozen=True)
+class Choice(Value):
+    """One word of a closed list."""
+
+    words: tuple[str, ...]
+
+    @property
+    def accepted(self) -> str:
+        """The list."""
+        return "one of " + ", ".join(self.words)
+
+    def read(self, value: object) -> str:
+        """Return the word."""
+        if not isinstance(value, str) or value not in self.words:
+            near = did_you_mean(value, list(self.words)) if isinstance(value, str) else ""
+            sentence = f"{shown(value)} is not accepted; accepted is {self.accepted}"
+            raise UnitError(sentence + (near or "."))
+        return value
+
+    def json_schema(self) -> dict[str, Any]:
+        """An enumeration."""
+        return {"enum": list(self.words)}
+
+
+@dataclass(frozen=True)
+class Text(Value):
+    """A text of a given form."""
+
+    pattern: str
+    accepted_: str
+    file_name: bool = False
+
+    @property
+    def accepted(self) -> str:
+        """The form in words."""
+        return self.accepted_
+
+    def read(self, value: object) -> str:
+        """Return the text."""
+        if not isinstance(value, str) or re.fullmatch(self.pattern, value) is None:
+            raise UnitError(f"{shown(value)} is not accepted; accepted is {self.accepted}.")
+        if self.file_name and value.split(".")[0].lower() in NAMES_OF_DEVICES:
+            raise UnitError(
+                f"{shown(value)} is the name of a device on some systems and cannot name a file; "
+                f"accepted is {self.accepted}."
+            )
+        return value
+
+    def json_schema(self) -> dict[str, Any]:
+        """A string of the form."""
+        return {"type": "string", "pattern": f"^(?:{self.pattern})$"}
+
+
+STUDY_NAME = Text(
+    r"[A-Za-z0-9](?:[A-Za-z0-9._-]{0,62}[A-Za-z0-9])?",
+    "a name of 1 to 64 letters A-Z, digits, dots, underscores and hyphens that starts and ends "
+    "with a letter or digit, because files are named after it",
+    file_name=True,
+)
+CONDITION_NAME = Text(
+    r"[A-Za-z][A-Za-z0-9_-]{0,39}",
+    "a name of 1 to 40 letters A-Z, digits, underscores and hyphens that starts with a letter",
+)
+
+
+@dataclass(frozen=True)
+class Extent:
+    """A size that may be given as a length or as a fraction of the chord.
+
+    Attributes
+    ----------
+    value : float
+        In `unit`.
+    unit : str
+        "m" or "chord".
+    """
+
+    value: float
+    unit: Literal["m", "chord"] = "chord"
+
+    def chords(self, chord: float) -> float:
+        """Return the size in chords, for a chord [m]."""
+        return self.value / chord if self.unit == "m" else self.value
+
+    def metres(self, chord: float) -> float:
+        """Return the size [m], for a chord [m]."""
+        return self.value if self.unit == "m" else self.value * chord
+
+
+@dataclass(frozen=True)
+class LengthOrFraction(Value):
+    """A length, or a fraction of the chord; a plain number is a fraction."""
+
+    at_most: float
+    """Largest fraction of the chord."""
+
+    @property
+    def accepted(self) -> str:
+        """Both forms."""
+        most = FRACTION.stated(self.at_most)
+        return f'a length such as "0.8 mm" or a fraction of the chord from 0 to {most}'
+
+    def read(self, value: object) -> Extent:
+        """Return the extent."""
+        if isinstance(value, Extent):
+            return value
+        number, dimension = read_either(value, (FRACTION, LENGTH))
+        if number < 0.0 or (dimension is FRACTION and number > self.at_most):
+            raise UnitError(f"{shown(value)} is out of range; accepted is {self.accepted}.")
+        return Extent(number, "m" if dimension is LENGTH else "chord")
+
+    def write(self, value: Extent) -> str | float:
+        """Return the text or the number."""
+        return f"{value.value!r} m" if value.unit == "m" else value.value
+
+    def json_schema(self) -> dict[str, Any]:
+        """A number or a text with a unit."""
+        return Measure(FRACTION, at_least=0.0, at_most=self.at_most).json_schema()
+
+
+@dataclass(frozen=True)
+class Lift(Value):
+    """A lift coefficient, or how it follows from the flight."""
+
+    lowest: float
+    highest: float
+
+    @property
+    def accepted(self) -> str:
+        """The two words and the range."""
+        return f"level, maximum or a lift coefficient from {self.lowest:g} to {self.highest:g}"
+
+    def read(self, value: object) -> float | str:
+        """Return the word or the number."""
+        if value in ("level", "maximum"):
+            return str(value)
+        try:
+            return Measure(NUMBER, at_least=self.lowest, at_most=self.highest).read(value)
+        except UnitError as error:
+            near = did_you_mean(value, ["level", "maximum"]) if isinstance(value, str) else ""
+            sentence = f"{shown(value)} is not accepted; accepted is {self.accepted}"
+            raise UnitError(sentence + (near or ".")) from error
+
+    def json_schema(self) -> dict[str, Any]:
+        """A word or a number."""
+        number = Measure(NUMBER, at_least=self.lowest, at_most=self.highest).json_schema()
+        return {"anyOf": [{"enum": ["level", "maximum"]}, number]}
+
+
+@dataclass(frozen=True)
+class Pair(Value):
+    """Two numbers, each within its range, rising if they are the ends of an interval."""
+
+    first: Measure = Measure(NUMBER)
+    second: Measure = Measure(NUMBER)
+    rising: bool = False
+
+    @property
+    def accepted(self) -> str:
+        """The form."""
+        if self.rising:
+            return "a list of two numbers, the lower one first"
+        return f"a list of two numbers: {self.first.range}, and {self.second.range}"
+
+    def read(self, value: object) -> tuple[float, float]:
+        """Return the two numbers."""
+        if not isinstance(value, (list, tuple)) or len(value) != 2:
+            raise UnitError(f"{shown(value)} is not accepted; accepted is {self.accepted}.")
+        first, second = self._read(value, 0), self._read(value, 1)
+        if self.rising and not first < second:
+            raise UnitError(
+                f"the lower end {first:g} is not below the upper end {second:g}; "
+                f"accepted is {self.accepted}."
+            )
+        return first, second
+
+    def _read(self, value: list[object] | tuple[object, ...], index: int) -> float:
+        try:
+            return (self.first, self.second)[index].read(value[index])
+        except UnitError as error:
+            raise UnitError(str(error), (index,)) from error
+
+    def write(self, value: tuple[float, float]) -> list[float]:
+        """Return a list."""
+        return list(value)
+
+    def json_schema(self) -> dict[str, Any]:
+        """An array of two numbers."""
+        numbers = [self.first.json_schema(), self.second.json_schema()]
+        return {"type": "array", "prefixItems": numbers, "items": False, "minItems": 2}
+
+
+@dataclass(frozen=True)
+class Where(Value):
+    """Where an objective is taken: a condition, weights of several, or a place x/c."""
+
+    @property
+    def accepted(self) -> str:
+        """The three forms."""
+        return (
+            "the name of a condition, weights such as {cruise: 0.7, climb: 0.3}, "
+            "or for a depth the place x/c"
+        )
+
+    def read(self, value: object) -> str | dict[str, float] | float:
+        """Return the name, the weights or the place."""
+        if isinstance(value, Mapping):
+            return {str(name): self._weight(name, weight) for name, weight in value.items()}
+        if isinstance(value, str) and re.fullmatch(CONDITION_NAME.pattern, value):
+            return value
+        try:
+            return Measure(FRACTION, at_least=0.0, at_most=1.0).read(value)
+        except UnitError as error:
+            sentence = f"{shown(value)} is not accepted; accepted is {self.accepted}."
+            raise UnitError(sentence) from error
+
+    @staticmethod
+    def _weight(name: str, weight: object) -> float:
+        try:
+            return Measure(FRACTION, more_than=0.0, at_most=1e6).read(weight)
+        except UnitError as error:
+            raise UnitError(str(error), (name,)) from error
+
+    def json_schema(self) -> dict[str, Any]:
+        """Any of the three forms."""
+        weight = Measure(FRACTION, more_than=0.0).json_schema()
+        return {
+            "anyOf": [
+                {"type": "string"},
+                {"type": "number", "minimum": 0, "maximum": 1},
+                {"type": "object", "additionalProperties": weight, "minProperties": 1},
+            ]
+        }
