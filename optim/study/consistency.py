@@ -1,4 +1,4 @@
-"""What two keys of a study can disagree about, and what is accepted but has no effect.
+"""What two keys of a study can disagree about.
 
 Every rule looks at a draft: whatever part of the study could be read. So a wrong unit in one place
 does not hide a wrong name in another, and all faults are told at once. A rule that needs a part
@@ -8,69 +8,21 @@ which could not be read says nothing: that part has its own fault.
 from __future__ import annotations
 
 import re
-from collections.abc import Iterator, Mapping
-from dataclasses import dataclass, field
-from typing import Any
+from collections.abc import Iterator
 
 from optim.errors import Fault
+from optim.study.draft import Draft
 from optim.study.limits import BUILT_UNITS, DIMENSIONS_OF_UNITS
-from optim.study.schema import (
-    LARGEST_GAP,
-    WEIGHT_ROUNDING,
-    Condition,
-    Constraint,
-    Objective,
-    SearchSettings,
-    SectionSettings,
-)
+from optim.study.schema import LARGEST_GAP, Condition, Constraint, Objective, SectionSettings
 from optim.study.units import shown
 from optim.study.values import CONDITION_NAME, did_you_mean
-from optim.study.vocabulary import QUANTITIES, Quantity, coefficient_names
+from optim.study.vocabulary import QUANTITIES, Quantity
 from optim.study.yaml_text import Path
 
 NACA = re.compile(r"naca:(?:\d{4}(?:-\d{2})?|\d{5})")
 """A baseline of the 4-digit, modified 4-digit or 5-digit families."""
 
-
-@dataclass
-class Draft:
-    """As much of a study as could be read.
-
-    Attributes
-    ----------
-    data : dict
-        The study as plain data, as written.
-    section, search : or None
-        None if that block could not be read.
-    conditions, objectives, constraints : dict
-        Key or index -> block; a block that could not be read is left out.
-    chord : float or None
-        Chord [m].
-    """
-
-    data: Mapping[str, Any]
-    section: SectionSettings | None = None
-    search: SearchSettings | None = None
-    conditions: dict[str, Condition] = field(default_factory=dict)
-    objectives: dict[int, Objective] = field(default_factory=dict)
-    constraints: dict[int, Constraint] = field(default_factory=dict)
-    chord: float | None = None
-
-    def written(self, *path: str | int) -> bool:
-        """Whether the study gives this key, rightly or wrongly."""
-        block: Any = self.data
-        for step in path:
-            try:
-                block = block[step]
-            except (KeyError, IndexError, TypeError):
-                return False
-        return True
-
-    @property
-    def condition_names(self) -> list[str]:
-        """All conditions that are written, readable or not."""
-        conditions = self.data.get("conditions")
-        return list(conditions) if isinstance(conditions, dict) else []
+Found = Iterator[tuple[Path, str]]
 
 
 def faults(draft: Draft) -> list[Fault]:
@@ -83,21 +35,6 @@ def faults(draft: Draft) -> list[Fault]:
     """
     rules = (_sources, _conditions, _objectives, _constraints, _section, _search)
     return [Fault(message, path) for rule in rules for path, message in rule(draft)]
-
-
-def warnings(draft: Draft) -> list[Fault]:
-    """Return what is accepted and has no effect or is probably not meant.
-
-    Parameters
-    ----------
-    draft : Draft
-        A study without faults.
-    """
-    rules = (_unread_conditions, _unused_blocks, _unused_section_keys, _odd_objectives, _odd_search)
-    return [Fault(message, path) for rule in rules for path, message in rule(draft)]
-
-
-Found = Iterator[tuple[Path, str]]
 
 
 def _sources(draft: Draft) -> Found:
@@ -124,9 +61,9 @@ def _condition(draft: Draft, name: str, condition: Condition) -> Iterator[tuple[
         yield ("alpha",), "lift and alpha both set the flow; give one of the two."
     if has("air") and draft.written("water"):
         yield ("air",), "the study is in water; leave air out."
-    yield from _level_flight(draft, name, condition)
-    medium = draft.written("air") or draft.written("water") or has("air")
-    if has("speed") and not medium:
+    has_medium = draft.written("air") or draft.written("water") or has("air")
+    yield from _level_flight(draft, name, condition, has_medium=has_medium)
+    if has("speed") and not has_medium:
         yield (
             ("speed",),
             "a speed makes no Reynolds number without a medium; give the study air, such as "
@@ -134,8 +71,10 @@ def _condition(draft: Draft, name: str, condition: Condition) -> Iterator[tuple[
         )
 
 
-def _level_flight(draft: Draft, name: str, condition: Condition) -> Iterator[tuple[Path, str]]:
-    """Level flight takes a craft, and a medium to know its speed and density in."""
+def _level_flight(
+    draft: Draft, name: str, condition: Condition, *, has_medium: bool
+) -> Iterator[tuple[Path, str]]:
+    """Ask level flight for a craft, and for a medium to know its speed and density in."""
     unread = any(
         draft.written("conditions", name, key) and getattr(condition, key) is None
         for key in ("lift", "alpha")
@@ -149,9 +88,8 @@ def _level_flight(draft: Draft, name: str, condition: Condition) -> Iterator[tup
             "level flight takes a craft with mass and wing_area; give the study a craft, or the "
             "condition a lift coefficient, lift: maximum or alpha.",
         )
-    elif not (draft.written("air") or draft.written("water") or condition.air is not None):
-        if condition.speed is None:
-            yield key, "level flight takes a medium; give the study air or water."
+    elif not has_medium and not draft.written("conditions", name, "speed"):
+        yield key, "level flight takes a medium; give the study air or water."
 
 
 def _objectives(draft: Draft) -> Found:
@@ -186,9 +124,9 @@ def _flow_objective(
     elif objective.at == {}:
         yield (*path, "at"), "no weight is given; give each condition that counts its weight."
     for name in objective.weights:
-        message = _peak_mismatch(draft, quantity, name)
-        if message:
-            yield _reference(objective, path, name), message
+        mismatch = _peak_mismatch(draft, quantity, name)
+        if mismatch:
+            yield _reference(objective, path, name), mismatch
 
 
 def _unknown_references(draft: Draft, path: Path) -> Found:
@@ -241,7 +179,7 @@ def _constraints(draft: Draft) -> Found:
 
 
 def _where(draft: Draft, constraint: Constraint, quantity: Quantity, path: Path) -> Found:
-    """A quantity has the condition or the place that it needs, and no other."""
+    """Ask for the condition or the place that a quantity needs, and for no other."""
     named, placed = draft.written(*path, "condition"), draft.written(*path, "at")
     flow = quantity.of == "condition"
     if flow and not named:
@@ -256,16 +194,17 @@ def _where(draft: Draft, constraint: Constraint, quantity: Quantity, path: Path)
         hint = "; a condition is named by condition" if flow else ""
         yield (*path, "at"), f"{quantity.name} takes no place x/c; leave at out{hint}."
     if flow and constraint.condition:
-        message = _peak_mismatch(draft, quantity, constraint.condition)
-        if message:
-            yield (*path, "condition"), message
+        mismatch = _peak_mismatch(draft, quantity, constraint.condition)
+        if mismatch:
+            yield (*path, "condition"), mismatch
 
 
 def _limits(draft: Draft, constraint: Constraint, quantity: Quantity, path: Path) -> Found:
     """Limits are of the quantity's kind, in its range and in order."""
     if constraint.unit not in {quantity.unit, BUILT_UNITS.get(quantity.unit)}:
         accepted = " or ".join(filter(None, (quantity.unit, BUILT_UNITS.get(quantity.unit))))
-        yield (*path, "unit"), f"{quantity.name} is not in {constraint.unit}; accepted is {accepted}."
+        message = f"{quantity.name} is not in {constraint.unit}; accepted is {accepted}."
+        yield (*path, "unit"), message
         return
     size = _chord_power(draft, constraint.unit)
     low, high = constraint.min, constraint.max
@@ -282,7 +221,8 @@ def _limits(draft: Draft, constraint: Constraint, quantity: Quantity, path: Path
     if low is not None and high is not None and low > high:
         yield (*path, "max"), f"the largest value {high:g} is below the least one {low:g}."
     if constraint.scale is not None and constraint.scale <= 0.0:
-        yield (*path, "scale"), f"a scale of {constraint.scale:g} measures nothing; give a size > 0."
+        message = f"a scale of {constraint.scale:g} measures nothing; give one above 0."
+        yield (*path, "scale"), message
 
 
 def _chord_power(draft: Draft, unit: str) -> float | None:
@@ -325,7 +265,7 @@ def _section(draft: Draft) -> Found:
     if NACA.fullmatch(baseline) and section.baseline_coordinates is not None:
         message = f"{baseline} needs no coordinates; leave one of the two out."
         yield ("section", "baseline_coordinates"), message
-    known = list(_coefficient_names(section))
+    known = list(draft.coefficient_names)
     for name in section.bounds:
         if name not in known and not _half_read(draft):
             near = did_you_mean(name, known)
@@ -356,13 +296,6 @@ def _half_read(draft: Draft) -> bool:
     )
 
 
-def _coefficient_names(section: SectionSettings) -> tuple[str, ...]:
-    counts = section.coefficients
-    return coefficient_names(
-        section.shape, counts.upper, counts.lower, leading_edge_term=section.leading_edge_term
-    )
-
-
 def _search(draft: Draft) -> Found:
     search = draft.search
     objectives = draft.data.get("objectives")
@@ -377,71 +310,3 @@ def _search(draft: Draft) -> Found:
     if search.population < len(objectives):
         message = f"{search.population} designs are fewer than {len(objectives)} objectives."
         yield ("search", "population"), message
-
-
-def _unread_conditions(draft: Draft) -> Found:
-    read = {name for objective in draft.objectives.values() for name in objective.weights}
-    read |= {c.condition for c in draft.constraints.values() if c.condition}
-    for name in draft.condition_names:
-        if name not in read:
-            message = (
-                f"no objective or constraint reads {name}: it is evaluated for the record only."
-            )
-            yield ("conditions", name), message
-
-
-def _unused_blocks(draft: Draft) -> Found:
-    conditions = draft.conditions
-    if draft.written("craft") and all(c.lift_or_level != "level" for c in conditions.values()):
-        yield ("craft",), "no condition is level flight: the craft has no effect."
-    for key in ("n_factor", "turbulence"):
-        if draft.written(key) and all(c.n_factor is not None for c in conditions.values()):
-            yield (key,), f"every condition has its own n_factor: {key} has no effect."
-    if draft.written("air") and all(c.air is not None for c in conditions.values()):
-        yield ("air",), "every condition has its own air: this one has no effect."
-    for name, condition in conditions.items():
-        if condition.load_factor != 1.0 and condition.lift_or_level != "level":
-            message = "the condition is not level flight: load_factor has no effect."
-            yield ("conditions", name, "load_factor"), message
-
-
-def _unused_section_keys(draft: Draft) -> Found:
-    section = draft.section
-    if section is None:
-        return
-    for key in ("leading_edge_term", "class_exponents"):
-        default = SectionSettings.model_fields[key].default
-        if section.shape != "cst" and getattr(section, key) != default:
-            yield ("section", key), f"a {section.shape} section has no {key}: it has no effect."
-    every = set(section.bounds) == set(_coefficient_names(section))
-    if every and draft.written("section", "freedom"):
-        yield ("section", "freedom"), "every coefficient has its own bounds: freedom has no effect."
-
-
-def _odd_objectives(draft: Draft) -> Found:
-    for index, objective in draft.objectives.items():
-        path: Path = ("objectives", index)
-        usual = QUANTITIES[objective.quantity].sense
-        if usual is not None and usual != objective.sense:
-            message = f"the study is to {objective.sense} {objective.quantity}; usual is {usual}."
-            yield (*path, objective.sense), message
-        if isinstance(objective.at, dict):
-            total = sum(objective.at.values())
-            if abs(total - 1.0) > WEIGHT_ROUNDING:
-                message = f"the weights add up to {total:g}: each is divided by it."
-                yield (*path, "at"), message
-        if objective.quantity == "cl" and all(
-            isinstance(draft.conditions[name].lift_or_level, float | str)
-            and draft.conditions[name].lift != "maximum"
-            for name in objective.weights
-        ):
-            yield path, "the lift coefficient is given there: every design has the same."
-
-
-def _odd_search(draft: Draft) -> Found:
-    search = draft.search
-    if search is None or search.evaluations is None:
-        return
-    if search.evaluations >= search.population * search.generations:
-        message = "the generations end first: evaluations has no effect."
-        yield ("search", "evaluations"), message

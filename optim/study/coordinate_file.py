@@ -166,7 +166,7 @@ def _rows(text: str, file: str) -> tuple[str, list[tuple[float, float]]]:
 
 
 def _pair(line: str) -> tuple[float, float] | None:
-    """The two numbers of a line, None if it holds anything else."""
+    """Return the two numbers of a line, None if it holds anything else."""
     words = _SEPARATOR.split(line)
     try:
         numbers = [float(word) for word in words]
@@ -232,7 +232,8 @@ def _distinct(points: FloatArray, notes: list[str], file: str) -> FloatArray:
         raise _refuse(file, "almost all points are the same")
     if dropped:
         notes.append(f"{dropped} repeated point{'s were' if dropped > 1 else ' was'} left out")
-    return points[keep]
+    distinct: FloatArray = points[keep]
+    return distinct
 
 
 @dataclass(frozen=True)
@@ -261,5 +262,5 @@ class CoordinateText(Value):
         return None if value is None else coordinate_text(value)
 
     def json_schema(self) -> dict[str, Any]:
-        """A text of several lines."""
+        """Accept a text of several lines."""
         return {"type": "string"}

@@ -1,4 +1,4 @@
-"""Canonical form and hash of a study: is this the same study?
+"""Canonical form and hash of a study, which tell whether two texts are the same study.
 
 Two texts that ask for the same thing have the same fingerprint, whatever their comments, units,
 order of keys, and whether a default is written out. The order of conditions, objectives and

@@ -97,7 +97,7 @@ class Limit(Value):
             raise UnitError(sentence) from error
 
     def json_schema(self) -> dict[str, Any]:
-        """A number or a text with a unit."""
+        """Accept a number or a text with a unit."""
         return {"anyOf": [{"type": "number"}, {"type": "string", "pattern": MEASURE_PATTERN}]}
 
     def _read_with_unit(self, value: object, info: core_schema.ValidationInfo) -> float:
@@ -133,5 +133,5 @@ class UnitOfLimits(Value):
         return value
 
     def json_schema(self) -> dict[str, Any]:
-        """An enumeration."""
+        """Accept one of the units."""
         return {"enum": list(DIMENSIONS_OF_UNITS)}

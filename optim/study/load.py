@@ -9,40 +9,25 @@ from __future__ import annotations
 
 import math
 import re
-from collections.abc import Mapping
 from dataclasses import replace
 from pathlib import Path
-from types import MappingProxyType, UnionType
-from typing import Any, TypeVar, Union, get_args, get_origin
+from types import UnionType
+from typing import TypeGuard, Union, get_args, get_origin
 
 from pydantic import BaseModel, ValidationError
 from pydantic_core import ErrorDetails
-from typing_extensions import TypeIs
 
 from optim.errors import Fault, SectionError, StudyError
-from optim.study import consistency, yaml_text
-from optim.study.consistency import NACA, Draft
+from optim.study import consistency, without_effect, yaml_text
+from optim.study.consistency import NACA
 from optim.study.coordinate_file import coordinate_text, read_coordinates
-from optim.study.schema import (
-    CHORD,
-    Condition,
-    Constraint,
-    Objective,
-    SearchSettings,
-    SectionSettings,
-    Source,
-    Study,
-)
-from optim.study.units import UnitError, shown
+from optim.study.draft import read_draft
+from optim.study.schema import Source, Study
+from optim.study.units import shown
 from optim.study.values import did_you_mean
 from optim.study.yaml_text import MOST_BYTES, Tree, fault_at
 
-BlockT = TypeVar("BlockT", bound=BaseModel)
-
 ACCEPTED = "accepted is a study in YAML, UTF-8; `sectionwright template` writes one"
-
-STAND_INS = MappingProxyType({"shape": "cst", "baseline": "naca:0012"})
-"""Values for the required keys of a section that cannot be read, so that its others are judged."""
 
 
 def load_study(path: str | Path) -> Study:
@@ -96,12 +81,12 @@ def parse_study(text: str, name: str = "study", folder: Path | None = None) -> S
         raise StudyError(tree.faults or [fault_at((), message, name, tree.places.of(()))])
     found = _read_baseline(tree, name, folder)
     study, faults = _validated(tree, name)
-    draft = _draft(tree.data, study)
+    draft = read_draft(tree.data)
     found += faults + _located(tree, name, consistency.faults(draft))
     faults = tree.faults + [fault for fault in found if fault.path not in tree.unread]
     if faults or study is None:
         raise StudyError(sorted(set(faults), key=_order))
-    warnings = sorted(_located(tree, name, consistency.warnings(draft)), key=_order)
+    warnings = sorted(_located(tree, name, without_effect.warnings(draft)), key=_order)
     return study.with_source(Source(text, name, tree.places, tuple(warnings)))
 
 
@@ -159,8 +144,8 @@ def _read_baseline(tree: Tree, file: str, folder: Path | None) -> list[Fault]:
         hint = re.sub(r"(?i)^naca[ _-]?", "naca:", baseline)
         hint = f"; did you mean {hint}?" if NACA.fullmatch(hint) else ""
         message = (
-            f"there is no file {shown(baseline)}{where}; "
-            f"accepted is naca:DIGITS or a coordinate file, named relative to the study{hint or '.'}"
+            f"there is no file {shown(baseline)}{where}; accepted is naca:DIGITS or a coordinate "
+            f"file, named relative to the study{hint or '.'}"
         )
         return [fault_at(path, message, file, tree.places.of(path))]
     try:
@@ -172,7 +157,7 @@ def _read_baseline(tree: Tree, file: str, folder: Path | None) -> list[Fault]:
 
 
 def _validated(tree: Tree, file: str) -> tuple[Study | None, list[Fault]]:
-    """The study, or what is wrong with single keys."""
+    """Return the study, or what is wrong with single keys."""
     try:
         return Study.model_validate(tree.data), []
     except ValidationError as error:
@@ -200,7 +185,7 @@ def _fault(tree: Tree, file: str, detail: ErrorDetails) -> Fault:
 
 
 def _form(kind: str, path: yaml_text.Path, found: object) -> str:
-    """A value of the wrong form: a list in place of keys, and the like."""
+    """Say what form a value has to have: a mapping, a list, more items."""
     if kind == "too_short":
         least = Study.model_fields[str(path[0])].metadata[0].min_length
         return f"there are too few; give at least {least}."
@@ -223,7 +208,7 @@ def _described(block: type[BaseModel], key: str) -> str:
 
 
 def _block_at(path: yaml_text.Path) -> type[BaseModel] | None:
-    """The block of a study that a path leads to, None if it leads to a value."""
+    """Return the block of a study that a path leads to, None if it leads to a value."""
     kind: object = Study
     for step in path:
         if isinstance(kind, type) and issubclass(kind, BaseModel):
@@ -235,67 +220,9 @@ def _block_at(path: yaml_text.Path) -> type[BaseModel] | None:
     return kind if _is_block(kind) else None
 
 
-def _is_block(kind: object) -> TypeIs[type[BaseModel]]:
+def _is_block(kind: object) -> TypeGuard[type[BaseModel]]:
     return isinstance(kind, type) and issubclass(kind, BaseModel)
 
 
 def _optional(kind: object) -> bool:
     return get_origin(kind) in {Union, UnionType}
-
-
-def _draft(data: dict[str, Any], study: Study | None) -> Draft:
-    """As much of the study as could be read."""
-    conditions, objectives = data.get("conditions"), data.get("objectives")
-    draft = Draft(
-        data,
-        section=_readable(SectionSettings, data.get("section"), STAND_INS),
-        search=_readable(SearchSettings, data.get("search", {})),
-        chord=_chord(data.get("chord")),
-    )
-    named = conditions.items() if isinstance(conditions, dict) else ()
-    draft.conditions = {n: c for n, d in named if (c := _readable(Condition, d)) is not None}
-    listed = objectives if isinstance(objectives, list) else ()
-    draft.objectives = {
-        i: o for i, d in enumerate(listed) if (o := _readable(Objective, d)) is not None
-    }
-    limits = data.get("constraints")
-    draft.constraints = {
-        i: c for i, d in enumerate(limits if isinstance(limits, list) else ())
-        if (c := _readable_constraint(d)) is not None
-    }
-    return draft
-
-
-def _chord(value: object) -> float | None:
-    try:
-        return CHORD.read(value)
-    except UnitError:
-        return None
-
-
-def _readable(
-    block: type[BlockT], data: object, stand_ins: Mapping[str, object] = MappingProxyType({})
-) -> BlockT | None:
-    """The block without the keys that cannot be read; None if it is nothing without them."""
-    if not isinstance(data, dict):
-        return None
-    try:
-        return block.model_validate(data)
-    except ValidationError as error:
-        broken = {detail["loc"][0] for detail in error.errors() if detail["loc"]}
-    try:
-        return block.model_validate(
-            {**stand_ins, **{key: value for key, value in data.items() if key not in broken}}
-        )
-    except ValidationError:
-        return None
-
-
-def _readable_constraint(data: object) -> Constraint | None:
-    """A constraint; of one whose quantity is unknown, the condition that it names."""
-    constraint = _readable(Constraint, data)
-    if constraint is None and isinstance(data, dict):
-        name = data.get("condition")
-        condition = name if isinstance(name, str) else None
-        return Constraint.model_construct(quantity="", condition=condition)
-    return constraint

@@ -2,7 +2,8 @@
 
 The models are frozen and hold plain SI numbers, angles in radians. What one key alone can get
 wrong is refused here; what two keys can disagree about is in `consistency`. `load` adds the places
-in the file.
+in the file. The module is longer than others because a key that is written elsewhere would be
+written twice.
 """
 
 from __future__ import annotations
@@ -17,6 +18,7 @@ from pydantic import BaseModel, ConfigDict, Field, PrivateAttr, model_validator
 from optim.arrays import FloatArray
 from optim.errors import Fault
 from optim.study import yaml_text
+from optim.study.composite import Extent, LengthOrFraction, Lift, Where
 from optim.study.coordinate_file import CoordinateText
 from optim.study.fingerprint import fingerprint
 from optim.study.limits import Limit, UnitOfLimits, unit_of_limits
@@ -36,14 +38,10 @@ from optim.study.values import (
     STUDY_NAME,
     Choice,
     Count,
-    Extent,
     Flag,
-    LengthOrFraction,
-    Lift,
     Measure,
     Pair,
     Text,
-    Where,
 )
 from optim.study.vocabulary import QUANTITIES, Sense
 from optim.study.yaml_text import Path, Place, Places, fault_at
@@ -78,6 +76,11 @@ class Block(BaseModel):
     """A mapping of a study: frozen, and no key beyond those written here."""
 
     model_config = ConfigDict(frozen=True, extra="forbid")
+
+
+def _one_of_keys(how: Literal["anyOf", "oneOf"], *keys: str) -> ConfigDict:
+    """Let the JSON schema ask for one of several keys; `consistency` does so for a study."""
+    return ConfigDict(json_schema_extra={how: [{"required": [key]} for key in keys]})
 
 
 class Coefficients(Block):
@@ -191,8 +194,13 @@ CHORD = Measure(LENGTH, more_than=0.0, at_most=100.0)
 N_FACTOR = Measure(at_least=1.0, at_most=20.0)
 
 
+ALPHA = Measure(ANGLE, at_least=-math.pi / 6, at_most=math.pi / 6)
+
+
 class Condition(Block):
     """One flight state that every section is evaluated at."""
+
+    model_config = _one_of_keys("anyOf", "speed", "reynolds")
 
     speed: Annotated[float | None, Measure(SPEED, more_than=0.0, at_most=400.0)] = Field(
         default=None, description="True speed; with chord and medium it gives the Reynolds number."
@@ -210,7 +218,7 @@ class Condition(Block):
         description="Lift coefficient; level: that of level flight of the craft; maximum: the "
         "peak of a sweep of the angle. level if a craft is given, unless alpha is.",
     )
-    alpha: Annotated[float | None, Measure(ANGLE, at_least=-math.pi / 6, at_most=math.pi / 6)] = Field(
+    alpha: Annotated[float | None, ALPHA] = Field(
         default=None, description="Angle of attack from the chord line, in place of lift."
     )
     load_factor: Annotated[float, Measure(more_than=0.0, at_most=20.0)] = Field(
@@ -233,6 +241,8 @@ class Condition(Block):
 class Objective(Block):
     """One figure to be made as large or as small as possible."""
 
+    model_config = _one_of_keys("oneOf", "maximise", "minimise")
+
     maximise: Annotated[str | None, QUANTITY_NAME] = Field(
         default=None, description="The quantity, if more of it is better."
     )
@@ -252,7 +262,7 @@ class Objective(Block):
 
     @property
     def sense(self) -> Sense:
-        """maximise or minimise."""
+        """Which of maximise and minimise is given."""
         return "maximise" if self.maximise is not None else "minimise"
 
     @property
@@ -275,6 +285,8 @@ class Objective(Block):
 
 class Constraint(Block):
     """One limit that a design must keep."""
+
+    model_config = _one_of_keys("anyOf", "min", "max")
 
     quantity: Annotated[str, QUANTITY_NAME] = Field(description="What is limited.")
     unit: Annotated[str, UnitOfLimits()] = Field(

@@ -16,7 +16,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from fractions import Fraction
 from functools import cache
-from typing import Any
+from typing import Any, TypeGuard
 
 LONGEST_TEXT = 60
 """A longer text is no number with a unit."""
@@ -263,7 +263,7 @@ def normal_unit(text: str) -> str:
     return re.sub(r"^°(?=[CF]$)", "deg", text).replace("°", "deg")
 
 
-def _short_text(value: object) -> bool:
+def _short_text(value: object) -> TypeGuard[str]:
     return isinstance(value, str) and len(value) <= LONGEST_TEXT
 
 

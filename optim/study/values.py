@@ -8,26 +8,16 @@ from __future__ import annotations
 
 import re
 from abc import ABC, abstractmethod
-from collections.abc import Mapping
 from dataclasses import dataclass
 from difflib import get_close_matches
-from typing import Any, Literal
+from typing import Any
 
 from pydantic import GetCoreSchemaHandler, GetJsonSchemaHandler
 from pydantic_core import CoreSchema, PydanticCustomError, core_schema
 
-from optim.study.units import (
-    FRACTION,
-    LENGTH,
-    NUMBER,
-    Dimension,
-    UnitError,
-    read,
-    read_either,
-    shown,
-)
+from optim.study.units import NUMBER, Dimension, UnitError, read, shown
 
-MEASURE_PATTERN = r"^\s*[+-]?([0-9]+\.?[0-9]*|\.[0-9]+)([eE][+-]?[0-9]{1,3})?\s*[^0-9].*$"
+MEASURE_PATTERN = r"^\s*[+-]?([0-9]+\.?[0-9]*|\.[0-9]+)([eE][+-]?[0-9]{1,3})?(\s*[A-Za-zµμ°%].*)?$"
 """A text with a number and a unit, for editors; the units themselves are in `units`."""
 
 SMALLEST_LIKENESS = 0.6
@@ -65,7 +55,7 @@ class Value(ABC):
 
     @abstractmethod
     def json_schema(self) -> dict[str, Any]:
-        """JSON Schema of what may be written."""
+        """Return the JSON Schema of what may be written."""
 
     def write(self, value: Any) -> Any:  # noqa: ANN401
         """Return plain data that `read` turns into `value` again."""
@@ -136,7 +126,7 @@ class Measure(Value):
         )
 
     def json_schema(self) -> dict[str, Any]:
-        """A number in range, or a text with a unit."""
+        """Accept a number in range, or a text with a unit."""
         ends = (
             ("minimum", self.at_least), ("exclusiveMinimum", self.more_than),
             ("maximum", self.at_most),
@@ -144,7 +134,8 @@ class Measure(Value):
         number = {"type": "number"} | {key: end for key, end in ends if end is not None}
         if not self.dimension.unit:
             return number
-        return {"anyOf": [number, {"type": "string", "pattern": MEASURE_PATTERN}]}
+        text = {"type": "string", "pattern": MEASURE_PATTERN, "examples": [self.dimension.example]}
+        return {"anyOf": [number, text]}
 
 
 @dataclass(frozen=True)
@@ -173,7 +164,7 @@ class Count(Value):
         return value
 
     def json_schema(self) -> dict[str, Any]:
-        """An integer in range."""
+        """Accept an integer in range."""
         schema: dict[str, Any] = {
             "type": "integer", "minimum": self.at_least, "maximum": self.at_most
         }  # fmt: skip
@@ -196,7 +187,7 @@ class Flag(Value):
         return value
 
     def json_schema(self) -> dict[str, Any]:
-        """A boolean."""
+        """Accept a boolean."""
         return {"type": "boolean"}
 
 
@@ -220,7 +211,7 @@ class Choice(Value):
         return value
 
     def json_schema(self) -> dict[str, Any]:
-        """An enumeration."""
+        """Accept one of the words."""
         return {"enum": list(self.words)}
 
 
@@ -249,7 +240,7 @@ class Text(Value):
         return value
 
     def json_schema(self) -> dict[str, Any]:
-        """A string of the form."""
+        """Accept a string of the form."""
         return {"type": "string", "pattern": f"^(?:{self.pattern})$"}
 
 
@@ -263,90 +254,6 @@ CONDITION_NAME = Text(
     r"[A-Za-z][A-Za-z0-9_-]{0,39}",
     "a name of 1 to 40 letters A-Z, digits, underscores and hyphens that starts with a letter",
 )
-
-
-@dataclass(frozen=True)
-class Extent:
-    """A size that may be given as a length or as a fraction of the chord.
-
-    Attributes
-    ----------
-    value : float
-        In `unit`.
-    unit : str
-        "m" or "chord".
-    """
-
-    value: float
-    unit: Literal["m", "chord"] = "chord"
-
-    def chords(self, chord: float) -> float:
-        """Return the size in chords, for a chord [m]."""
-        return self.value / chord if self.unit == "m" else self.value
-
-    def metres(self, chord: float) -> float:
-        """Return the size [m], for a chord [m]."""
-        return self.value if self.unit == "m" else self.value * chord
-
-
-@dataclass(frozen=True)
-class LengthOrFraction(Value):
-    """A length, or a fraction of the chord; a plain number is a fraction."""
-
-    at_most: float
-    """Largest fraction of the chord."""
-
-    @property
-    def accepted(self) -> str:
-        """Both forms."""
-        most = FRACTION.stated(self.at_most)
-        return f'a length such as "0.8 mm" or a fraction of the chord from 0 to {most}'
-
-    def read(self, value: object) -> Extent:
-        """Return the extent."""
-        if isinstance(value, Extent):
-            return value
-        number, dimension = read_either(value, (FRACTION, LENGTH))
-        if number < 0.0 or (dimension is FRACTION and number > self.at_most):
-            raise UnitError(f"{shown(value)} is out of range; accepted is {self.accepted}.")
-        return Extent(number, "m" if dimension is LENGTH else "chord")
-
-    def write(self, value: Extent) -> str | float:
-        """Return the text or the number."""
-        return f"{value.value!r} m" if value.unit == "m" else value.value
-
-    def json_schema(self) -> dict[str, Any]:
-        """A number or a text with a unit."""
-        return Measure(FRACTION, at_least=0.0, at_most=self.at_most).json_schema()
-
-
-@dataclass(frozen=True)
-class Lift(Value):
-    """A lift coefficient, or how it follows from the flight."""
-
-    lowest: float
-    highest: float
-
-    @property
-    def accepted(self) -> str:
-        """The two words and the range."""
-        return f"level, maximum or a lift coefficient from {self.lowest:g} to {self.highest:g}"
-
-    def read(self, value: object) -> float | str:
-        """Return the word or the number."""
-        if value in ("level", "maximum"):
-            return str(value)
-        try:
-            return Measure(NUMBER, at_least=self.lowest, at_most=self.highest).read(value)
-        except UnitError as error:
-            near = did_you_mean(value, ["level", "maximum"]) if isinstance(value, str) else ""
-            sentence = f"{shown(value)} is not accepted; accepted is {self.accepted}"
-            raise UnitError(sentence + (near or ".")) from error
-
-    def json_schema(self) -> dict[str, Any]:
-        """A word or a number."""
-        number = Measure(NUMBER, at_least=self.lowest, at_most=self.highest).json_schema()
-        return {"anyOf": [{"enum": ["level", "maximum"]}, number]}
 
 
 @dataclass(frozen=True)
@@ -387,49 +294,5 @@ class Pair(Value):
         return list(value)
 
     def json_schema(self) -> dict[str, Any]:
-        """An array of two numbers."""
-        numbers = [self.first.json_schema(), self.second.json_schema()]
-        return {"type": "array", "prefixItems": numbers, "items": False, "minItems": 2}
-
-
-@dataclass(frozen=True)
-class Where(Value):
-    """Where an objective is taken: a condition, weights of several, or a place x/c."""
-
-    @property
-    def accepted(self) -> str:
-        """The three forms."""
-        return (
-            "the name of a condition, weights such as {cruise: 0.7, climb: 0.3}, "
-            "or for a depth the place x/c"
-        )
-
-    def read(self, value: object) -> str | dict[str, float] | float:
-        """Return the name, the weights or the place."""
-        if isinstance(value, Mapping):
-            return {str(name): self._weight(name, weight) for name, weight in value.items()}
-        if isinstance(value, str) and re.fullmatch(CONDITION_NAME.pattern, value):
-            return value
-        try:
-            return Measure(FRACTION, at_least=0.0, at_most=1.0).read(value)
-        except UnitError as error:
-            sentence = f"{shown(value)} is not accepted; accepted is {self.accepted}."
-            raise UnitError(sentence) from error
-
-    @staticmethod
-    def _weight(name: str, weight: object) -> float:
-        try:
-            return Measure(FRACTION, more_than=0.0, at_most=1e6).read(weight)
-        except UnitError as error:
-            raise UnitError(str(error), (name,)) from error
-
-    def json_schema(self) -> dict[str, Any]:
-        """Any of the three forms."""
-        weight = Measure(FRACTION, more_than=0.0).json_schema()
-        return {
-            "anyOf": [
-                {"type": "string"},
-                {"type": "number", "minimum": 0, "maximum": 1},
-                {"type": "object", "additionalProperties": weight, "minProperties": 1},
-            ]
-        }
+        """Accept an array of two numbers."""
+        return {"type": "array", "items": {"type": "number"}, "minItems": 2, "maxItems": 2}

@@ -78,7 +78,7 @@ class _StudyLoader(yaml.SafeLoader):
         if self.check_event(yaml.AliasEvent):
             self.aliases += 1
         if self.aliases > MOST_ALIASES or self.depth > DEEPEST:
-            mark = self.peek_event().start_mark
+            mark = self.peek_event().start_mark  # type: ignore[no-untyped-call]
             bound = f"more than {MOST_ALIASES} aliases" if self.depth <= DEEPEST else (
                 f"more than {DEEPEST} levels of nesting"
             )  # fmt: skip
@@ -94,7 +94,7 @@ class _StudyDumper(yaml.SafeDumper):
 
     yaml_implicit_resolvers = _resolvers()
 
-    def ignore_aliases(self, data: object) -> bool:
+    def ignore_aliases(self, data: object) -> bool:  # noqa: ARG002  PyYAML passes it
         """Write everything out: two equal blocks are no alias of each other."""
         return True
 
@@ -260,11 +260,13 @@ class _Walk:
         key = self.tree.places.keys.setdefault(path, _start(node))
         self.tree.places.values[path] = _start(node) if isinstance(node, ScalarNode) else key
         if node in above:
-            return self.unread("this block holds itself; write its content out.", node, path)
+            self.unread("this block holds itself; write its content out.", node, path)
+            return None
         if isinstance(node, ScalarNode):
             return self.scalar(node, path)
         if node.tag not in (f"{_TAG}map", f"{_TAG}seq"):
-            return self.unread(_refusal(node), node, path)
+            self.unread(_refusal(node), node, path)
+            return None
         if isinstance(node, SequenceNode):
             return [
                 self.value(item, (*path, index), (*above, node))
@@ -324,14 +326,13 @@ class _Walk:
         kind, text = node.tag.removeprefix(_TAG), str(node.value)
         if kind in {"str", "merge"}:
             return text
-        if kind == "null":
-            message = "no value is given; give one, or leave the key out."
-            return self.unread(message, node, path)
         if kind == "bool" and text.lower() in {"true", "false"}:
             return text.lower() == "true"
         if kind in {"int", "float"}:
             return self.number(node, kind, path)
-        return self.unread(_refusal(node), node, path)
+        nothing = "no value is given; give one, or leave the key out."
+        self.unread(nothing if kind == "null" else _refusal(node), node, path)
+        return None
 
     def number(self, node: ScalarNode, kind: str, path: Path) -> float | None:
         """Return a whole number as int, any other as float."""
@@ -339,7 +340,8 @@ class _Walk:
         try:
             return int(text) if kind == "int" and len(text) <= 20 else float(text)
         except ValueError:
-            return self.unread(f"{shown(text)} is no number.", node, path)
+            self.unread(f"{shown(text)} is no number.", node, path)
+            return None
 
 
 def _refusal(node: Node) -> str:
