@@ -14,7 +14,7 @@ References
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import asdict, dataclass
 
 from optim.aerodynamics.medium import STANDARD_GRAVITY, Medium, air, water
 from optim.aerodynamics.operating_point import OperatingPoint
@@ -90,6 +90,13 @@ class Condition:
     trip_upper: float
     trip_lower: float
     maximum: bool
+
+    def stated(self) -> dict[str, str | float | bool | None]:
+        """Return everything by name in SI units, None where there is nothing."""
+        return {
+            key: None if isinstance(value, float) and math.isnan(value) else value
+            for key, value in asdict(self).items()
+        }
 
     @property
     def point(self) -> OperatingPoint:

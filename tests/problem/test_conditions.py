@@ -7,6 +7,7 @@ water at 15 C. Mack's turbulence law, AGARD CP-224, 1977, FROM MEMORY.
 
 from __future__ import annotations
 
+import json
 import math
 
 import pytest
@@ -81,6 +82,15 @@ def test_a_reynolds_number_without_a_medium_needs_no_speed():
     assert (condition.reynolds, condition.cl) == (1e6, 0.5)
     assert math.isnan(condition.speed)
     assert math.isnan(condition.density)
+
+
+def test_a_stated_condition_has_no_missing_numbers():
+    """What JSON is written from: None in place of not-a-number."""
+    stated = resolved({"speed": "12.5 m/s", "lift": "maximum"}).stated()
+    assert stated["cl"] is None
+    assert stated["maximum"] is True
+    assert stated["speed"] == 12.5
+    assert json.loads(json.dumps(stated, allow_nan=False)) == stated
 
 
 def test_an_angle_takes_the_place_of_lift():

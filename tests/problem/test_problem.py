@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import math
+import subprocess
+import sys
 
 import numpy as np
 import pytest
@@ -272,3 +274,13 @@ def test_a_problem_is_made_without_flying(study_text):
 
     problem = Problem.from_study(parse_study(study_text), never)
     assert problem.baseline_design.shape == (10,)
+
+
+def test_reading_a_study_into_a_problem_waits_for_no_heavy_library():
+    """Neither the compiled kernels nor the search are loaded by making a problem."""
+    code = (
+        "import sys; from optim.problem.problem import Problem; import optim.problem.reachable; "
+        "print(sorted({'numba', 'pymoo', 'h5py', 'matplotlib'} & set(sys.modules)))"
+    )
+    done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
+    assert done.stdout.strip() == "[]"
