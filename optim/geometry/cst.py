@@ -6,12 +6,13 @@ and N2 = 1 make a round nose and a wedge-shaped edge. With x = t**2 the root is 
 derivative is closed-form.
 
 The first coefficient of a side sets its nose radius, A**2 / 2, the last one its slope at the edge.
-The sides have their own first coefficients, as in the papers: a cambered section in its published
-frame is fitted closely only so. Their nose radii may then differ and the curvature steps at the
-nose; `bezier` is the parameterisation with one radius for both sides.
+In the plain form each side has its own first coefficient, as in the papers; the nose radii of the
+sides may then differ, and the curvature steps at the nose.
 
-The optional leading-edge term adds a x (1 - x)**(n + 1/2) with one coefficient to both sides: it
-slopes the mean line at the nose, which a product with C(x) cannot.
+The optional leading-edge term adds a x (1 - x)**(n + 1/2) to both sides: it slopes the mean line at
+the nose, which a product with C(x) cannot, and which unequal first coefficients only imitate. With
+the term the sides therefore share the first coefficient, so the curvature runs through the nose
+without a step, and the number of variables stays the same.
 
 References
 ----------
@@ -37,8 +38,9 @@ COEFFICIENTS = (4, 13)
 """Fewest and most coefficients a side: Bernstein order 3 to 12. Fewer cannot shape a section,
 more fit the noise of measured ordinates (Kulfan 2008 finds 6 to 9 enough)."""
 
-NOSE_EXPONENTS = (0.5, 1.0)
-"""N1 from round to wedge-shaped; below 1/2 the nose is flat and y(t) has no slope at it."""
+NOSE_EXPONENTS = (0.5, 0.75)
+"""N1 from round to pointed; below 1/2 the nose is flat, and towards 1 it is a knife edge that no
+attached flow turns round (rule of thumb)."""
 
 EDGE_EXPONENTS = (1.0, 2.0)
 """N2 from a wedge to a cusp; below 1 the edge is round and the flow does not leave at it."""
@@ -142,9 +144,10 @@ class Cst(Parameterisation):
     gap : float
         Edge gap [chords].
     leading_edge_term : bool
-        Whether the design ends with the coefficient of the leading-edge term.
+        Whether the design begins with the first coefficient of both sides and ends with that of
+        the leading-edge term.
     exponents : (float, float)
-        N1, 0.5 to 1, and N2, 1 to 2, of the class function.
+        N1, 0.5 to 0.75, and N2, 1 to 2, of the class function.
     """
 
     upper: int = 6
@@ -162,9 +165,16 @@ class Cst(Parameterisation):
 
     @property
     def names(self) -> tuple[str, ...]:
-        """upper_1, ... lower_1, ... and leading_edge if there is one; _1 is A0 of the papers."""
-        sides = [f"{s}_{i + 1}" for s in ("upper", "lower") for i in range(getattr(self, s))]
-        return (*sides, "leading_edge") if self.leading_edge_term else tuple(sides)
+        """upper_1, ..., lower_1, ... or nose, upper_2, ..., lower_2, ..., leading_edge.
+
+        upper_1 is A0 of the papers, and nose is A0 of the upper and -A0 of the lower side.
+        """
+        first = 2 if self.leading_edge_term else 1
+        upper = tuple(f"upper_{i}" for i in range(first, self.upper + 1))
+        lower = tuple(f"lower_{i}" for i in range(first, self.lower + 1))
+        if self.leading_edge_term:
+            return ("nose", *upper, *lower, "leading_edge")
+        return (*upper, *lower)
 
     @property
     def reach(self) -> FloatArray:
@@ -174,7 +184,9 @@ class Cst(Parameterisation):
     def section(self, design: FloatArray) -> Section:
         """Return the section of a design; lower coefficients are usually negative."""
         d = self.checked(design)
-        upper, lower = d[: self.upper], d[self.upper : self.upper + self.lower]
+        upper, lower = d[: self.upper], d[self.upper :]
+        if self.leading_edge_term:
+            lower = np.concatenate([[-d[0]], lower[:-1]])
         curve = CstCurve(
             shape=bernstein.TwoSides(upper, lower),
             exponents=self.exponents,
@@ -188,15 +200,15 @@ class Cst(Parameterisation):
         """Return the ordinate at `t` as offset (n,) and matrix (n, n_variables)."""
         u, is_upper = np.abs(t), (t < 0.0)[:, None]
         x = u * u
-        (c,) = class_function(u, self.exponents, 0)
-        columns = [
-            np.where(is_upper, c[:, None] * bernstein.evaluate(self.upper - 1, x), 0.0),
-            np.where(is_upper, 0.0, c[:, None] * bernstein.evaluate(self.lower - 1, x)),
-        ]
+        c = class_function(u, self.exponents, 0)[0][:, None]
+        upper = np.where(is_upper, c * bernstein.evaluate(self.upper - 1, x), 0.0)
+        lower = np.where(is_upper, 0.0, c * bernstein.evaluate(self.lower - 1, x))
+        columns = [upper, lower]
         if self.leading_edge_term:
             power = np.where(t < 0.0, self.upper, self.lower) - 0.5
-            columns.append(leading_edge_term(u, power, 0)[0][:, None])
-        return np.where(t < 0.0, 0.5, -0.5) * self.gap * x, np.hstack(columns)
+            term = leading_edge_term(u, power, 0)[0]
+            columns = [upper[:, 0] - lower[:, 0], upper[:, 1:], lower[:, 1:], term]
+        return np.where(t < 0.0, 0.5, -0.5) * self.gap * x, np.column_stack(columns)
 
 
 def check_range(what: str, found: float, accepted: tuple[float, float]) -> None:

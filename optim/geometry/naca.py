@@ -24,6 +24,7 @@ from numpy.polynomial import polynomial as power
 
 from optim.arrays import FloatArray
 from optim.errors import Fault, SectionError
+from optim.geometry import validity
 from optim.geometry.curve import Curve
 from optim.geometry.section import Section
 
@@ -179,7 +180,11 @@ def naca_section(digits: str) -> Section:
     else:
         raise _refused(digits, f"no thickness with its greatest at {place} tenths was published")
     line = _mean_line(digits, line_digits)
-    return Section(name=f"NACA {digits.strip()}", curve=NacaCurve(half, line))
+    section = Section(name=f"NACA {digits.strip()}", curve=NacaCurve(half, line))
+    found = validity.faults(section)
+    if found:  # the formulas fold for extreme numbers, such as 9199
+        raise _refused(digits, " ".join(fault.sentence for fault in found).rstrip("."))
+    return section
 
 
 def _refused(digits: str, reason: str) -> SectionError:

@@ -11,6 +11,7 @@ from __future__ import annotations
 from abc import ABC, abstractmethod
 
 from optim.arrays import FloatArray, check_finite, check_shape
+from optim.geometry import fitting
 from optim.geometry.section import Section
 
 
@@ -63,6 +64,10 @@ class Parameterisation(ABC):
     @abstractmethod
     def reach(self) -> FloatArray:
         """Step of each variable that counts as one unit of freedom, (n_variables,) [chords]."""
+
+    def fit(self, section: Section) -> FloatArray:
+        """Return the design closest to a section, (n,) [chords]; see `fitting.fit`."""
+        return fitting.fit(self, section).design
 
     def bounds(self, design: FloatArray, freedom: float) -> tuple[FloatArray, FloatArray]:
         """Return the lower and upper bounds of a search about a design.

@@ -14,7 +14,8 @@ from functools import cached_property
 import numpy as np
 
 from optim.arrays import FloatArray, check_finite
-from optim.geometry import measures
+from optim.errors import Fault, SectionError
+from optim.geometry import measures, ordinates, validity
 from optim.geometry.curve import Curve
 
 
@@ -198,3 +199,35 @@ class Section:
     def curvature_sign_changes(self) -> FloatArray:
         """Return the parameters where the contour turns from convex to concave or back [-]."""
         return measures.sign_changes(self.curve, self.samples)
+
+
+def section_from_coordinates(xy: FloatArray, name: str) -> tuple[Section, tuple[str, ...]]:
+    """Return the section through points, on its chord line, and what was changed.
+
+    Parameters
+    ----------
+    xy : (n, 2) array
+        9 to 5000 points in any unit, as one chain around the contour in either sense or as two
+        sides, the edge open or closed.
+    name : str
+        What it is called on the screen.
+
+    Returns
+    -------
+    section : Section
+        A spline through the points; `rotation` and `scale` say how they were normalised.
+    notes : tuple of str
+        One sentence for each change.
+
+    Raises
+    ------
+    SectionError
+        If the points are no section; every reason with its place.
+    """
+    points, notes = ordinates.contour(xy)
+    curve, rotation, scale = ordinates.normalised(points, notes)
+    section = Section(name, curve, rotation, scale)
+    found = validity.faults(section)
+    if found:
+        raise SectionError([Fault(fault.sentence) for fault in found])
+    return section, tuple(notes)
