@@ -12,14 +12,14 @@ design that is no section, or that misses the limits on its shape by far, is not
 from __future__ import annotations
 
 import time
-from collections.abc import Callable, Sequence
+from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property
-from typing import Protocol, TypeVar
+from typing import TypeVar
 
 import numpy as np
 
-from optim.aerodynamics.operating_point import OperatingPoint, SectionFlow
+from optim.aerodynamics.operating_point import SectionFlow
 from optim.arrays import FloatArray, check_finite, check_shape, frozen
 from optim.errors import Fault, StudyError
 from optim.geometry.section import Section
@@ -31,6 +31,7 @@ from optim.problem.conditions import Condition, resolve
 from optim.problem.constraints import ConstraintSpec, shortfall
 from optim.problem.design_space import DesignSpace, design_space
 from optim.problem.evaluation import Evaluation
+from optim.problem.flying import MakeSolver, coupled_solver, fly, not_flown
 from optim.problem.grading import condition_shortfall, contour_violation, lift_reached
 from optim.problem.objectives import ObjectiveSpec
 from optim.problem.quantities import (
@@ -43,32 +44,11 @@ from optim.problem.specs import constraint_specs, objective_specs
 from optim.study.schema import Study
 from optim.study.vocabulary import QUANTITIES
 
+Step = TypeVar("Step")
+
 GIVE_UP_AT = 0.25
 """Sum of the scaled violations of shape limits from which a section is not flown: a quarter of a
 limit is more than a search gains on its way by knowing the flow."""
-
-
-class FlowSolver(Protocol):
-    """What a problem asks of the evaluator of one section."""
-
-    def flows(self, points: Sequence[OperatingPoint]) -> Sequence[SectionFlow]:
-        """Return the flows in order, each started from earlier ones of the same list."""
-
-    def maximum_lift(self, point: OperatingPoint) -> SectionFlow:
-        """Return the flow at the peak of the lift."""
-
-
-Step = TypeVar("Step")
-
-MakeSolver = Callable[[FloatArray], FlowSolver]
-
-
-def coupled_solver(nodes: FloatArray) -> FlowSolver:
-    """Return the coupled evaluator of a section, (panels + 1, 2) nodes [chords]."""
-    # The compiled kernels are loaded here, so that reading a study does not wait for them.
-    from optim.aerodynamics.evaluator import SectionEvaluator  # noqa: PLC0415
-
-    return SectionEvaluator(nodes)
 
 
 @dataclass(frozen=True)
@@ -77,8 +57,8 @@ class _Attempt:
 
     section: dict[str, float]
     flows: tuple[SectionFlow, ...]
-    contour_violation: float
-    points: int
+    contour_violation: float = 0.0
+    points: int = 0
 
 
 @dataclass(frozen=True)
@@ -330,15 +310,16 @@ class Problem:
         section = self.section(design)
         if faults(section):
             violation = contour_violation(section, self.space.distance(design))
-            return _Attempt({}, self._not_flown(Outcome.NOT_A_SECTION), violation, 0)
+            return _Attempt(
+                {}, not_flown(self.conditions, Outcome.NOT_A_SECTION, self.panels), violation
+            )
         measures = self.measures(section)
         if self._shape_violation(measures) > GIVE_UP_AT:
-            return _Attempt(measures, self._not_flown(Outcome.NOT_EVALUATED), 0.0, 0)
-        flows, points = self._fly(section)
-        return _Attempt(measures, flows, 0.0, points)
-
-    def _not_flown(self, outcome: Outcome) -> tuple[SectionFlow, ...]:
-        return tuple(SectionFlow(c.point, outcome, self.panels) for c in self.conditions)
+            return _Attempt(
+                measures, not_flown(self.conditions, Outcome.NOT_EVALUATED, self.panels)
+            )
+        flows = fly(self.solver(panel_nodes(section, self.panels)), self.conditions)
+        return _Attempt(measures, flows, points=len(flows))
 
     def _shape_violation(self, measures: dict[str, float]) -> float:
         """Sum of the violations of the limits that need no flow."""
@@ -348,26 +329,6 @@ class Problem:
             shortfall(spec.margin(judge.constraint_value(spec, table, self.chord)))
             for spec in of_shape
         )
-
-    def _fly(self, section: Section) -> tuple[tuple[SectionFlow, ...], int]:
-        """Return the flows in the order of the conditions, and how many were solved.
-
-        Given angles and lifts come first, so that the peaks are sought from nothing but the
-        section and their own point, whatever else the study flies.
-        """
-        solver = self.solver(panel_nodes(section, self.panels))
-        steady = [c for c in self.conditions if not c.maximum]
-        found = dict(
-            zip(
-                [c.name for c in steady],
-                solver.flows([c.point for c in steady]),
-                strict=True,
-            )
-        )
-        for condition in self.conditions:
-            if condition.maximum:
-                found[condition.name] = solver.maximum_lift(condition.point)
-        return tuple(found[name] for name in self.condition_names), len(found)
 
     def _table(self, attempt: _Attempt) -> judge.Table:
         """Return what is recorded of a design, by name."""
