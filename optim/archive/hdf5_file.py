@@ -7,7 +7,6 @@ other attribute of the file, so that a flipped bit anywhere is found or harmless
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from pathlib import Path
 
 import h5py
@@ -16,7 +15,7 @@ import numpy as np
 from optim.archive.digest import RowDigest, array_digest, combined_digest
 from optim.archive.items import Array, plain_dtype
 from optim.archive.journal_file import newer_format
-from optim.archive.layout import FORMAT, FORMAT_VERSION
+from optim.archive.layout import BY_PATH, FORMAT, FORMAT_VERSION
 from optim.errors import ArchiveDamagedError
 
 LIBRARY_VERSIONS = ("earliest", "v108")
@@ -50,13 +49,11 @@ def attribute_text(target: h5py.Group | h5py.Dataset, name: str) -> str:
     return bytes(value).decode("utf-8") if isinstance(value, bytes | np.bytes_) else str(value)
 
 
-def datasets(file: h5py.File) -> Iterator[tuple[str, h5py.Dataset]]:
-    """Yield every dataset with its path, in the order of their paths."""
+def _paths(file: h5py.File) -> list[str]:
+    """Return the paths of all groups and datasets but the root, in their order."""
     paths: list[str] = []
-    file.visit(paths.append)
-    for path in sorted(paths):
-        if isinstance(file[path], h5py.Dataset):
-            yield f"/{path}", file[path]
+    file.visit(lambda path: paths.append(f"/{path}"))
+    return sorted(paths)
 
 
 def read_plain(dataset: h5py.Dataset, rows: slice | None = None) -> Array:
@@ -84,16 +81,16 @@ def dataset_digest(dataset: h5py.Dataset) -> str:
 
 
 def manifest_digest(file: h5py.File) -> str:
-    """Return the digest over every attribute of the file but the one that holds it."""
-    paths: list[str] = ["/"]
-    file.visit(lambda path: paths.append(f"/{path}"))
-    lines = [
+    """Return the digest over every object and attribute of the file but the one that holds it."""
+    paths = ["/", *_paths(file)]
+    objects = [(path, type(file[path]).__name__) for path in paths]
+    attributes = [
         (f"{path}@{name}", np.asarray(value).tobytes().hex())
         for path in paths
         for name, value in file[path].attrs.items()
         if (path, name) != ("/", DIGEST)
     ]
-    return combined_digest(lines)
+    return combined_digest(objects + attributes)
 
 
 def open_file(path: Path) -> h5py.File:
@@ -138,7 +135,7 @@ def _check_kind(file: h5py.File, path: Path) -> None:
         raise newer_format(path, version)
 
 
-def verified_digests(file: h5py.File, path: Path) -> dict[str, str]:
+def verified_digests(file: h5py.File, path_of_file: Path) -> dict[str, str]:
     """Read everything, compare it with its digests and return these by dataset.
 
     Raises
@@ -146,33 +143,32 @@ def verified_digests(file: h5py.File, path: Path) -> dict[str, str]:
     ArchiveDamagedError
         If anything differs; what is intact is said.
     """
-    intact: dict[str, str] = {}
-    damaged: list[str] = []
     try:
-        for place, dataset in datasets(file):
-            digest = _sound(dataset)
-            if digest:
-                intact[place] = digest
-            else:
-                damaged.append(place)
         whole = manifest_digest(file) == attribute_text(file, DIGEST)
+        paths = [path for path in _paths(file) if isinstance(file[path], h5py.Dataset)]
     except READABLE:
-        whole = False
+        whole, paths = False, sorted(BY_PATH)
+    digests = {path: _sound_digest(file, path) for path in paths}
+    damaged = [path for path, digest in digests.items() if not digest]
     if damaged or not whole:
-        raise ArchiveDamagedError(_what_is_left(path, damaged, sorted(intact)))
-    return intact
+        raise ArchiveDamagedError(_what_is_left(path_of_file, damaged, len(paths) - len(damaged)))
+    return digests
 
 
-def _sound(dataset: h5py.Dataset) -> str:
+def _sound_digest(file: h5py.File, path: str) -> str:
     """Return the digest of a dataset if it is the stored one, else an empty text."""
     try:
-        digest = dataset_digest(dataset)
-        return digest if digest == attribute_text(dataset, DIGEST) else ""
+        digest = dataset_digest(file[path])
+        return digest if digest == attribute_text(file[path], DIGEST) else ""
     except READABLE:
         return ""
 
 
-def _what_is_left(path: Path, damaged: list[str], intact: list[str]) -> str:
+def _what_is_left(path: Path, damaged: list[str], intact: int) -> str:
     what = ", ".join(damaged) or "the description of its datasets"
-    left = f"intact are {', '.join(intact)}" if intact else "nothing in it is intact"
+    left = (
+        f"{intact} datasets are intact and can be read with any HDF5 reader"
+        if intact
+        else "nothing in it is intact"
+    )
     return f"{path}: the archive is damaged ({what}); {left}."

@@ -11,17 +11,17 @@ import hashlib
 import json
 import os
 import sqlite3
-from collections.abc import Iterable, Iterator, Mapping
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
-from typing import Literal
+from typing import Any, Literal
 from urllib.parse import quote
 
 import numpy as np
 
 from optim.archive.digest import array_digest, combined_digest
 from optim.archive.items import Array, Items, plain_dtype, text_array
-from optim.archive.layout import BY_FIELD, FORMAT_VERSION, STATE_JSON
+from optim.archive.layout import BY_FIELD, FORMAT_VERSION, RECORD, STATE_JSON
 from optim.errors import ArchiveDamagedError, ArchiveVersionError, Fault
 
 Ending = Literal["running", "stopped", "finished"]
@@ -42,6 +42,8 @@ CREATE TABLE block (generation INTEGER, path TEXT, dtype TEXT, shape TEXT, sha25
 CREATE TABLE session (number INTEGER PRIMARY KEY, record TEXT);
 CREATE TABLE seal (ending TEXT, generations INTEGER, evaluations INTEGER, chain TEXT, seal TEXT);
 """
+
+_RECORD_PATHS = {dataset.path for dataset in RECORD}
 
 _READABLE = (sqlite3.Error, ValueError, TypeError, KeyError, OverflowError, MemoryError)
 """What reading a damaged file can raise below us."""
@@ -128,18 +130,21 @@ class JournalView:
     def header_items(self) -> Items:
         """Return the header's items by path."""
         with self._read():
-            return self._items("SELECT * FROM header")
+            return self._items("header", "SELECT * FROM header")
 
     def generation_items(self, generation: int) -> Items:
         """Return the items of one generation by path."""
         query = "SELECT path, dtype, shape, sha256, data FROM block WHERE generation = ?"
         with self._read():
-            return self._items(query, generation)
+            items = self._items(str(generation), query, generation)
+            if items.keys() != _RECORD_PATHS:
+                raise ValueError(f"generation {generation} is not complete")
+        return items
 
     def state_items(self) -> Items:
         """Return the items of the search's state by path."""
         with self._read():
-            return self._items("SELECT * FROM state")
+            return self._items("state", "SELECT * FROM state")
 
     def session_texts(self) -> tuple[str, ...]:
         """Return the record of every start and resume as JSON."""
@@ -156,11 +161,12 @@ class JournalView:
             Attribute of `GenerationRecord`, such as "hypervolume".
         """
         query = (
-            "SELECT path, dtype, shape, sha256, data FROM block WHERE path = ? ORDER BY generation"
+            "SELECT generation, path, dtype, shape, sha256, data FROM block "
+            "WHERE path = ? ORDER BY generation"
         )
         with self._read() as db:
             rows = db.execute(query, (BY_FIELD[field].path,))
-            blocks = [_checked(row) for row in rows]
+            blocks = [_checked(str(generation), row) for generation, *row in rows]
         return np.concatenate(blocks) if blocks else np.empty(0)
 
     def each_generation(self) -> Iterator[Items]:
@@ -192,18 +198,15 @@ class JournalView:
 
     def _intact(self, generation: int, seal: Seal) -> Items:
         try:
-            items = self.generation_items(generation)
-            if _COUNT in items:
-                return items
-            found = f"{self.path}: the journal is damaged (generation {generation} is missing)."
+            return self.generation_items(generation)
         except ArchiveDamagedError as error:
-            found = str(error)
-        raise ArchiveDamagedError(
-            f"{found} The first {generation} of {seal.generations} generations are intact."
-        )
+            raise ArchiveDamagedError(
+                f"{error} The first {generation} of {seal.generations} generations are intact."
+            ) from error
 
-    def _items(self, query: str, *arguments: int) -> Items:
-        return {row[0]: _checked(row) for row in self._db.execute(query, arguments)}
+    def _items(self, table: str, query: str, *arguments: int) -> Items:
+        rows = self._db.execute(query, arguments)
+        return {row[0]: _checked(table, row) for row in rows}
 
     def _sessions_digest(self) -> str:
         return hashlib.sha256(json.dumps(self.session_texts()).encode()).hexdigest()
@@ -212,10 +215,15 @@ class JournalView:
         return combined_digest(self._db.execute("SELECT path, sha256 FROM state").fetchall())
 
 
-def _checked(row: tuple[str, str, str, str, bytes]) -> Array:
+def _place_digest(table: str, path: str, array: Array) -> str:
+    """Return the digest of an item in its place: header, state or the number of a generation."""
+    return combined_digest([(f"{table} {path}", array_digest(array))])
+
+
+def _checked(table: str, row: Sequence[Any]) -> Array:
     path, dtype, shape, digest, data = row
     array = np.frombuffer(data, plain_dtype(dtype)).reshape(json.loads(shape))
-    if array_digest(array) != digest:
+    if _place_digest(table, path, array) != digest:
         raise ValueError(f"{path} does not match its digest")
     return array
 
@@ -341,7 +349,7 @@ def write_new_journal(
         db.execute(f"PRAGMA application_id = {APPLICATION_ID}")
         db.execute(f"PRAGMA user_version = {FORMAT_VERSION}")
         db.executescript(f"BEGIN; {_SCHEMA}")
-        rows = [item_row(place, array) for place, array in header.items()]
+        rows = _rows("header", header)
         db.executemany("INSERT INTO header VALUES (?, ?, ?, ?, ?)", rows)
         db.executemany("INSERT INTO session (record) VALUES (?)", [(text,) for text in sessions])
         put_state(db, state or {STATE_JSON.path: text_array("null")})
@@ -364,15 +372,14 @@ def _put_generations(db: sqlite3.Connection, chain: str, generations: Iterable[I
 
 def put_generation(db: sqlite3.Connection, generation: int, items: Items) -> None:
     """Add the items of one generation."""
-    rows = [(generation, *item_row(path, array)) for path, array in items.items()]
+    rows = [(generation, *row) for row in _rows(str(generation), items)]
     db.executemany("INSERT INTO block VALUES (?, ?, ?, ?, ?, ?)", rows)
 
 
 def put_state(db: sqlite3.Connection, state: Items) -> None:
     """Replace the search's state."""
     db.execute("DELETE FROM state")
-    rows = [item_row(path, array) for path, array in state.items()]
-    db.executemany("INSERT INTO state VALUES (?, ?, ?, ?, ?)", rows)
+    db.executemany("INSERT INTO state VALUES (?, ?, ?, ?, ?)", _rows("state", state))
 
 
 def put_seal(db: sqlite3.Connection, seal: Seal) -> None:
@@ -386,10 +393,17 @@ def put_seal(db: sqlite3.Connection, seal: Seal) -> None:
     )
 
 
-def item_row(path: str, array: Array) -> tuple[str, str, str, str, bytes]:
-    """Return the row of a table that holds an item."""
-    shape = json.dumps(list(array.shape))
-    return path, array.dtype.str, shape, array_digest(array), array.tobytes()
+def _rows(table: str, items: Items) -> list[tuple[str, str, str, str, bytes]]:
+    return [
+        (
+            path,
+            array.dtype.str,
+            json.dumps(list(array.shape)),
+            _place_digest(table, path, array),
+            array.tobytes(),
+        )
+        for path, array in items.items()
+    ]
 
 
 def fsync_folder(folder: Path) -> None:

@@ -1,7 +1,7 @@
 """Every dataset of the archive: path, type, axes, unit, meaning. The one place where they stand.
 
 The journal stores the same items under the same paths, so that RUN.h5 is the journal's items laid
-end to end. ``python -m optim.archive.layout > results/README.md`` writes the description.
+end to end. `optim.archive.guide` writes results/README.md from here.
 """
 
 from __future__ import annotations

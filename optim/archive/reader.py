@@ -315,17 +315,23 @@ def open_run(path: Path) -> Run:
 
 def no_such_run(run: Path) -> InputError:
     """Return the refusal of a run that is not there."""
-    return InputError([Fault(f"no such run; neither it nor {run.name}{_JOURNAL} is there.",
-                             file=str(run))])
+    said = f"no such run; neither it nor {run.name}{_JOURNAL} is there."
+    return InputError([Fault(said, file=str(run))])
 
 
 def open_finished(run: Path) -> Run:
-    """Open RUN.h5 itself, whatever its journal says."""
-    file = open_file(run)
+    """Open RUN.h5 itself, whatever its journal says.
+
+    Raises
+    ------
+    FileNotFoundError
+        If there is none.
+    ArchiveVersionError, ArchiveDamagedError
+        As `open_run`.
+    """
     with contextlib.ExitStack() as undo:
-        undo.callback(file.close)
-        digests = verified_digests(file, run)
-        opened = _opened(file, run, digests, None)
+        file = undo.enter_context(open_file(run))
+        opened = _opened(file, run, verified_digests(file, run), None)
         undo.pop_all()
     return opened
 
@@ -341,14 +347,18 @@ def _opened(file: h5py.File, run: Path, digests: dict[str, str], process: Writer
 
 def _open_journal(run: Path) -> Run:
     process = holder(run)
-    with view_journal(run) as view, tempfile.TemporaryDirectory() as folder:
-        snapshot = Path(folder) / run.name
-        try:
+    try:
+        with view_journal(run) as view, tempfile.TemporaryDirectory() as folder:
+            snapshot = Path(folder) / run.name
             digests = derive(view, snapshot, compressed=False)
-        except ArchiveDamagedError as error:
-            raise _with_older(error, run) from error
-        # Open, it outlives its name; nothing is left behind however this process ends.
-        return _opened(h5py.File(snapshot, "r"), run, digests, process)
+            with contextlib.ExitStack() as undo:
+                # Once open, the file outlives its name.
+                file = undo.enter_context(h5py.File(snapshot, "r"))
+                opened = _opened(file, run, digests, process)
+                undo.pop_all()
+            return opened
+    except ArchiveDamagedError as error:
+        raise _with_older(error, run) from error
 
 
 def _with_older(error: ArchiveDamagedError, run: Path) -> ArchiveDamagedError:
