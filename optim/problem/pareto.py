@@ -18,7 +18,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from optim.arrays import BoolArray, FloatArray, check_finite, check_shape
+from optim.arrays import BoolArray, FloatArray, IntArray, check_finite, check_shape
 
 
 def non_dominated(points: FloatArray) -> BoolArray:
@@ -63,6 +63,32 @@ def _non_dominated_of_sorted(points: FloatArray) -> BoolArray:
         kept[rest[beaten]] = False
         waiting = rest[~beaten]
     return kept
+
+
+def feasible_front(points: FloatArray, violation: FloatArray) -> IntArray:
+    """Return which designs are feasible and dominated by no other feasible one.
+
+    Parameters
+    ----------
+    points : (n, n_objectives) array
+        Objectives, minimised; not-a-number where absent.
+    violation : (n,) array
+        Total violation of each design; 0 is feasible.
+
+    Returns
+    -------
+    (n_front,) array of int
+        Indices in ascending order; a design without a number is never among them.
+
+    Raises
+    ------
+    ValueError
+        If the shapes are not as described.
+    """
+    check_shape("points", points, {"n": None, "n_objectives": None})
+    check_shape("violation", violation, {"n": len(points)})
+    candidates = np.flatnonzero((violation == 0.0) & np.isfinite(points).all(axis=1))
+    return candidates[non_dominated(points[candidates])]
 
 
 def hypervolume(points: FloatArray, reference: FloatArray) -> float:

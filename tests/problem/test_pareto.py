@@ -14,7 +14,7 @@ import moocore
 import numpy as np
 import pytest
 
-from optim.problem.pareto import hypervolume, non_dominated
+from optim.problem.pareto import feasible_front, hypervolume, non_dominated
 
 FRONTS = Path(__file__).parent / "published" / "moo_fronts.csv"
 
@@ -128,6 +128,14 @@ def test_an_archive_of_a_night_is_filtered_in_a_breath():
     kept = non_dominated(points)
     assert kept.any()
     assert time.perf_counter() - start < 10.0
+
+
+def test_the_front_is_made_of_feasible_designs_alone():
+    """The best point is infeasible, one has no number, one is dominated."""
+    points = np.array([[0.0, 0.0], [1.0, 2.0], [2.0, 1.0], [2.0, 2.0], [np.nan, 0.0], [1.0, 2.0]])
+    violation = np.array([0.1, 0.0, 0.0, 0.0, 0.0, 0.0])
+    assert feasible_front(points, violation).tolist() == [1, 2, 5]
+    assert feasible_front(points, np.ones(6)).tolist() == []
 
 
 def test_misuse_is_refused():
