@@ -1,7 +1,7 @@
 """RUN.h5 derived from the journal: another name, verify, fsync, rename in one step.
 
 HDF5 promises nothing after a crash, so nothing is ever changed in place: a reader finds the old
-file or the new one, whole. One generation is in memory at a time, however long the run was.
+file or the new one, whole. A few generations are in memory at a time, however long the run was.
 """
 
 from __future__ import annotations
@@ -221,7 +221,7 @@ def _put_empty(file: h5py.File) -> dict[str, str]:
 
 
 class _Column:
-    """A dataset that is filled block by block, and its digest."""
+    """A dataset that is filled block by block, a chunk at a time, and its digest."""
 
     def __init__(
         self,
@@ -233,26 +233,37 @@ class _Column:
     ) -> None:
         shape = (rows, *first.shape[1:])
         form: dict[str, Any] = {"dtype": first.dtype, "track_times": False}
+        self._chunk = len(first)
         if first.size:
-            chunk = _rows_a_chunk(len(first), first.nbytes // len(first))
-            form |= {"maxshape": (None, *shape[1:]), "chunks": (chunk, *shape[1:])}
+            self._chunk = _rows_a_chunk(len(first), first.nbytes // len(first))
+            form |= {"maxshape": (None, *shape[1:]), "chunks": (self._chunk, *shape[1:])}
         if first.size and compressed:
             form |= {"compression": "gzip", "compression_opts": GZIP_LEVEL, "shuffle": True}
         self._dataset = file.create_dataset(described.path, shape, **form)
         self._filled = 0
+        self._waiting: list[Array] = []
         self._digest = RowDigest()
         _annotate(self._dataset, described)
 
     def add(self, block: Array) -> None:
         """Put a block below the last one."""
-        if block.size:
-            self._dataset[self._filled : self._filled + len(block)] = block
-        self._filled += len(block)
         self._digest.update(block)
+        self._waiting.append(block)
+        if sum(map(len, self._waiting)) >= self._chunk:
+            self._put()
 
     def digest(self) -> str:
-        """Return the digest of all of it."""
+        """Write what is waiting and return the digest of all of it."""
+        self._put()
         return self._digest.hexdigest(self._dataset.dtype, self._dataset.shape[1:])
+
+    def _put(self) -> None:
+        if self._waiting:
+            rows = np.concatenate(self._waiting)
+            if rows.size:
+                self._dataset[self._filled : self._filled + len(rows)] = rows
+            self._filled += len(rows)
+            self._waiting.clear()
 
 
 def _rows_a_chunk(rows: int, bytes_a_row: int) -> int:

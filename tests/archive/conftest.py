@@ -1,94 +1,12 @@
-"""A small invented run, a pure function of its seed: what every check of the archive stores."""
+"""Where a run may be written, and the way to the invented run that is shared here."""
 
-from __future__ import annotations
-
-import json
+import sys
 from pathlib import Path
 
-import numpy as np
 import pytest
 
-from optim.archive.journal import Journal
-from optim.archive.records import GenerationRecord, RunHeader
-from optim.outcomes import Outcome
-
-POPULATION = 12
-PROVENANCE = {"python": "3", "host": "bench"}
-
-
-def make_header(**changes):
-    """Five variables, two objectives, three constraints, two conditions."""
-    fields = {
-        "study_name": "tollgate-6-wing",
-        "study_text": "study: tollgate-6-wing  # Flügel\nchord: 212 mm\n",
-        "resolved_text": "study: tollgate-6-wing\nchord: 0.212\n",
-        "variable_names": tuple(f"upper_{i}" for i in range(5)),
-        "lower": np.full(5, -1.0),
-        "upper": np.full(5, 1.0),
-        "objective_names": ("lift_to_drag@survey", "nose_down_moment@survey"),
-        "objective_senses": ("maximise", "minimise"),
-        "objective_units": ("-", "-"),
-        "reference_point": np.array([0.0, 0.2]),
-        "constraint_names": ("thickness", "depth@0.3", "cl_max@slow"),
-        "constraint_kinds": ("min", "min", "min"),
-        "constraint_limits": np.array([0.1, 0.017, 1.4]),
-        "constraint_units": ("-", "m", "-"),
-        "constraint_scales": np.array([0.1, 0.017, 1.4]),
-        "condition_names": ("survey", "slow"),
-        "conditions_table": json.dumps({"survey": {"speed": 18.0}, "slow": {"speed": 12.5}}),
-        "condition_quantity_names": ("cl", "cd", "x_cp"),
-        "condition_quantity_units": ("-", "-", "-"),
-        "section_quantity_names": ("thickness", "area"),
-        "section_quantity_units": ("-", "-"),
-        "algorithm": "nsga3",
-        "seed": 7,
-        "provenance": PROVENANCE,
-    }
-    return RunHeader(**{**fields, **changes})
-
-
-def make_record(generation, population=POPULATION, **changes):
-    """One generation; a third of its designs failed at the second condition."""
-    rng = np.random.default_rng([7, generation])
-    failed = rng.random(population) < 0.3
-    absent = np.where(failed, np.nan, 1.0)
-    outcomes = np.zeros((population, 2), dtype=np.int8)
-    outcomes[failed, 1] = Outcome.NOT_CONVERGED
-    fields = {
-        "generation": generation,
-        "designs": rng.uniform(-1.0, 1.0, (population, 5)),
-        "objectives": rng.normal(size=(population, 2)) * absent[:, None],
-        "constraint_values": rng.normal(size=(population, 3)) * absent[:, None],
-        "margins": rng.normal(size=(population, 3)) * absent[:, None],
-        "violation": np.where(failed, 2.0, rng.integers(0, 2, population)),
-        "quantities": rng.normal(size=(population, 2, 3)) * absent[:, None, None],
-        "section_quantities": rng.normal(size=(population, 2)),
-        "outcomes": outcomes,
-        "design_outcomes": np.where(failed, Outcome.NOT_CONVERGED, Outcome.CONVERGED),
-        "search_objectives": rng.normal(size=(population, 2)),
-        "search_constraints": rng.normal(size=(population, 4)),
-        "points": rng.integers(1, 9, population),
-        "iterations": rng.integers(5, 90, population),
-        "seconds": rng.random(population),
-        "hypervolume": float(generation) * 1.5,
-        "elapsed": float(generation + 1) * 4.0,
-        "state_json": json.dumps({"bit_generator": {"state": 2**127 + generation}}),
-        "state_arrays": {
-            "population.X": rng.random((population, 5)),
-            "population.crowding": np.array([np.inf, 0.5]),
-            "survival.norm.ideal": rng.random(2),
-            "evaluated": np.arange(generation + 1),
-            "mask": np.array([True, False]),
-        },
-    }
-    return GenerationRecord(**{**fields, **changes})
-
-
-def write_journal(run: Path, generations: int, **header) -> None:
-    """Leave the journal of a run of so many generations, as if its writer had been killed."""
-    with Journal.create(run, make_header(**header)) as journal:
-        for generation in range(generations):
-            journal.append(make_record(generation))
+# Test modules are no packages: what they share is found by its folder.
+sys.path.insert(0, str(Path(__file__).parent))
 
 
 @pytest.fixture
