@@ -46,7 +46,7 @@ class LengthOrFraction(Value):
     def accepted(self) -> str:
         """Both forms."""
         most = FRACTION.stated(self.at_most)
-        return f'a length such as "0.8 mm" or a fraction of the chord from 0 to {most}'
+        return f'a length such as "0.8 mm" or a fraction of the chord from 0 % to {most}'
 
     def read(self, value: object) -> Extent:
         """Return the extent."""

@@ -13,8 +13,16 @@ from collections.abc import Iterator
 from optim.errors import Fault
 from optim.study.draft import Draft
 from optim.study.limits import BUILT_UNITS, DIMENSIONS_OF_UNITS
-from optim.study.schema import LARGEST_GAP, Condition, Constraint, Objective, SectionSettings
-from optim.study.units import shown
+from optim.study.schema import (
+    FEWEST_CONDITIONS,
+    FEWEST_OBJECTIVES,
+    LARGEST_GAP,
+    Condition,
+    Constraint,
+    Objective,
+    SectionSettings,
+)
+from optim.study.units import legible, shown
 from optim.study.values import CONDITION_NAME, did_you_mean
 from optim.study.vocabulary import QUANTITIES, Quantity
 from optim.study.yaml_text import Path
@@ -33,8 +41,17 @@ def faults(draft: Draft) -> list[Fault]:
     draft : Draft
         As much of the study as could be read.
     """
-    rules = (_sources, _conditions, _objectives, _constraints, _section, _search)
+    rules = (_enough, _sources, _conditions, _objectives, _constraints, _section, _search)
     return [Fault(message, path) for rule in rules for path, message in rule(draft)]
+
+
+def _enough(draft: Draft) -> Found:
+    """Ask for a condition, and for two objectives to trade against each other."""
+    fewest = (("conditions", dict, FEWEST_CONDITIONS), ("objectives", list, FEWEST_OBJECTIVES))
+    for key, form, least in fewest:
+        found = draft.data.get(key)
+        if isinstance(found, form) and len(found) < least:
+            yield (key,), f"{len(found)} are too few; give at least {least}."
 
 
 def _sources(draft: Draft) -> Found:
@@ -109,8 +126,8 @@ def _objectives(draft: Draft) -> Found:
         else:
             yield from _section_objective(draft, objective, quantity, path)
         if names.setdefault(objective.name, index) != index:
-            first = names[objective.name] + 1
-            yield path, f"{objective.name} is objective {first} already; leave one out."
+            first = names[objective.name]
+            yield path, f"{objective.name} is objectives.{first} already; leave one out."
 
 
 def _flow_objective(
@@ -173,8 +190,8 @@ def _constraints(draft: Draft) -> Found:
         yield from _where(draft, constraint, quantity, path)
         yield from _limits(draft, constraint, quantity, path)
         if names.setdefault(constraint.name, index) != index:
-            first = names[constraint.name] + 1
-            message = f"{constraint.name} is limited by constraint {first} already; make them one."
+            first = names[constraint.name]
+            message = f"constraints.{first} limits {constraint.name} already; make them one."
             yield path, message
 
 
@@ -239,11 +256,14 @@ def _peak_mismatch(draft: Draft, quantity: Quantity, name: str) -> str | None:
     unread = draft.written("conditions", name, "lift") and condition.lift is None
     if not quantity.maximum_only or unread or condition.lift == "maximum":
         return None
-    return f"{quantity.name} exists at a condition with lift: maximum only; {name} has another."
+    return (
+        f"{quantity.name} exists at a condition with lift: maximum only; "
+        f"{legible(name)} has another."
+    )
 
 
 def _names(draft: Draft) -> str:
-    return ", ".join(draft.condition_names) or "none is given"
+    return ", ".join(map(legible, draft.condition_names)) or "none is given"
 
 
 def _no_condition(draft: Draft, name: str) -> str:

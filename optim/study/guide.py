@@ -108,8 +108,9 @@ def _accepted(key: str, field: FieldInfo) -> str:
         "conditions": "name -> condition, at least one; a name is letters, digits, - and _",
         "objectives": "a list of two or more, see below",
         "constraints": "a list, see below",
-        "bounds": "coefficient -> [lowest, highest]; the coefficients of cst are `upper_1`, ..., "
-        "`lower_1`, ..., `leading_edge`, those of bezier `nose`, `upper_2`, ..., `lower_2`, ...",
+        "bounds": "coefficient -> [lowest, highest]; cst has `upper_1`, ..., `lower_1`, ..., "
+        "bezier `nose`, `upper_2`, ..., `lower_2`, ..., cst with the leading-edge term those of "
+        "bezier and `leading_edge`",
         "reference_point": "a list of numbers, one for each objective",
     }
     return forms.get(key, f"keys, see `{key}`")

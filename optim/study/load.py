@@ -9,10 +9,11 @@ from __future__ import annotations
 
 import math
 import re
+from collections.abc import Iterable
 from dataclasses import replace
 from pathlib import Path
 from types import UnionType
-from typing import TypeGuard, Union, get_args, get_origin
+from typing import Any, TypeGuard, Union, get_args, get_origin
 
 from pydantic import BaseModel, ValidationError
 from pydantic_core import ErrorDetails
@@ -79,21 +80,26 @@ def parse_study(text: str, name: str = "study", folder: Path | None = None) -> S
     if not isinstance(tree.data, dict):
         message = f"this is no study; {ACCEPTED}."
         raise StudyError(tree.faults or [fault_at((), message, name, tree.places.of(()))])
+    _order_weights(tree.data)
     found = _read_baseline(tree, name, folder)
     study, faults = _validated(tree, name)
     draft = read_draft(tree.data)
     found += faults + _located(tree, name, consistency.faults(draft))
     faults = tree.faults + [fault for fault in found if fault.path not in tree.unread]
     if faults or study is None:
-        raise StudyError(sorted(set(faults), key=_order))
-    warnings = sorted(_located(tree, name, without_effect.warnings(draft)), key=_order)
-    return study.with_source(Source(text, name, tree.places, tuple(warnings)))
+        raise StudyError(_in_order(set(faults), name))
+    warnings = _located(tree, name, without_effect.warnings(draft))
+    return study.with_source(Source(text, name, tree.places, _in_order(warnings, name)))
 
 
-def _order(fault: Fault) -> tuple[bool, float, float, str]:
-    """By place in the file; faults of another file last."""
-    line, column = fault.line or math.inf, fault.column or math.inf
-    return fault.path[:2] == ("section", "baseline"), line, column, fault.message
+def _in_order(faults: Iterable[Fault], file: str) -> tuple[Fault, ...]:
+    """Sort by place in the file; faults of another file come last."""
+
+    def place(fault: Fault) -> tuple[bool, float, float, str]:
+        line, column = fault.line or math.inf, fault.column or math.inf
+        return fault.file != file, line, column, fault.message
+
+    return tuple(sorted(faults, key=place))
 
 
 def _file_text(path: Path, file: str) -> str:
@@ -125,6 +131,17 @@ def _refuse(file: str, what: str) -> StudyError:
 
 def _located(tree: Tree, file: str, faults: list[Fault]) -> list[Fault]:
     return [fault_at(f.path, f.message, file, tree.places.of(f.path)) for f in faults]
+
+
+def _order_weights(data: dict[str, Any]) -> None:
+    """Put weights in the order of the conditions, so that equal studies sum in one order."""
+    conditions, objectives = data.get("conditions"), data.get("objectives")
+    if not isinstance(conditions, dict) or not isinstance(objectives, list):
+        return
+    for objective in objectives:
+        at = objective.get("at") if isinstance(objective, dict) else None
+        if isinstance(at, dict):
+            objective["at"] = {name: at[name] for name in conditions if name in at} | at
 
 
 def _read_baseline(tree: Tree, file: str, folder: Path | None) -> list[Fault]:
@@ -185,10 +202,7 @@ def _fault(tree: Tree, file: str, detail: ErrorDetails) -> Fault:
 
 
 def _form(kind: str, path: yaml_text.Path, found: object) -> str:
-    """Say what form a value has to have: a mapping, a list, more items."""
-    if kind == "too_short":
-        least = Study.model_fields[str(path[0])].metadata[0].min_length
-        return f"there are too few; give at least {least}."
+    """Say what form a value has to have: a mapping or a list."""
     if kind == "tuple_type":
         return f"{shown(found)} is not accepted; accepted is a list."
     block = _block_at(path)

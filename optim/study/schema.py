@@ -52,6 +52,9 @@ DEFAULT_N_FACTOR = 9.0
 FEWEST_COEFFICIENTS, MOST_COEFFICIENTS = 4, 13
 """Bernstein polynomials of order 3 to 12 on each side."""
 
+FEWEST_CONDITIONS, FEWEST_OBJECTIVES = 1, 2
+"""Counted by `consistency`, as written: pydantic would count the readable ones only."""
+
 LARGEST_GAP = 0.1
 """Trailing-edge gap [chords] beyond which a section has no edge; rule of thumb."""
 
@@ -105,12 +108,12 @@ class SectionSettings(Block):
     )
     leading_edge_term: Annotated[bool, Flag()] = Field(
         default=False,
-        description="Whether a cst section has one more variable, the leading-edge term "
-        "x (1 - x)^(n + 1/2).",
+        description="Whether a cst section has the term x (1 - x)^(n + 1/2), in exchange for one "
+        "first coefficient that both sides share.",
     )
     class_exponents: Annotated[
         tuple[float, float],
-        Pair(Measure(at_least=0.5, at_most=1.0), Measure(at_least=1.0, at_most=2.0)),
+        Pair(Measure(at_least=0.5, at_most=0.75), Measure(at_least=1.0, at_most=2.0)),
     ] = Field(
         default=(0.5, 1.0),
         description="Exponents of the class function x^a (1 - x)^b of a cst section; 0.5 and 1 "
@@ -389,10 +392,12 @@ class Study(Block):
         description="Turbulence of the stream, rms over speed, in place of n_factor (Mack 1977).",
     )
     conditions: dict[Annotated[str, CONDITION_NAME], Condition] = Field(
-        min_length=1, description="Flight states by name, evaluated in this order."
+        description="Flight states by name, evaluated in this order.",
+        json_schema_extra={"minProperties": FEWEST_CONDITIONS},
     )
     objectives: tuple[Objective, ...] = Field(
-        min_length=2, description="What is traded against what: two or more."
+        description="What is traded against what: two or more.",
+        json_schema_extra={"minItems": FEWEST_OBJECTIVES},
     )
     constraints: tuple[Constraint, ...] = Field(
         default=(), description="Limits that every design of the front keeps."

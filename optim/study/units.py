@@ -250,7 +250,11 @@ def shown(value: object) -> str:
         return "true" if value else "false"
     if isinstance(value, (Mapping, list, tuple)):
         return "a mapping of keys" if isinstance(value, Mapping) else "a list"
-    text = f'"{value}"' if isinstance(value, str) else format(value)
+    return legible(f'"{value}"' if isinstance(value, str) else format(value))
+
+
+def legible(text: str) -> str:
+    """Return a text short and on one line, whatever it holds."""
     text = text.encode("unicode_escape").decode("ascii") if not text.isprintable() else text
     return text if len(text) <= LONGEST_TEXT else f"{text[:LONGEST_TEXT]}..."
 

@@ -15,7 +15,7 @@ from typing import Any
 from pydantic import GetCoreSchemaHandler, GetJsonSchemaHandler
 from pydantic_core import CoreSchema, PydanticCustomError, core_schema
 
-from optim.study.units import NUMBER, Dimension, UnitError, read, shown
+from optim.study.units import NUMBER, Dimension, UnitError, legible, read, shown
 
 MEASURE_PATTERN = r"^\s*[+-]?([0-9]+\.?[0-9]*|\.[0-9]+)([eE][+-]?[0-9]{1,3})?(\s*[A-Za-zµμ°%].*)?$"
 """A text with a number and a unit, for editors; the units themselves are in `units`."""
@@ -32,7 +32,7 @@ NAMES_OF_DEVICES = frozenset(
 def did_you_mean(name: str, known: list[str]) -> str:
     """Return "; did you mean x?" for the nearest known name, or nothing if none is near."""
     near = get_close_matches(name, known, n=1, cutoff=SMALLEST_LIKENESS)
-    return f"; did you mean {near[0]}?" if near else ""
+    return f"; did you mean {legible(near[0])}?" if near else ""
 
 
 def refusal(error: UnitError) -> PydanticCustomError:

@@ -166,9 +166,9 @@ def coefficient_names(
     leading_edge_term : bool
         Whether a cst section has the leading-edge term.
     """
-    first = 1 if shape == "cst" else 2
+    term = shape == "cst" and leading_edge_term
+    shared = term or shape == "bezier"
+    first = 2 if shared else 1
     sides = [f"upper_{i}" for i in range(first, upper + 1)]
     sides += [f"lower_{i}" for i in range(first, lower + 1)]
-    if shape != "cst":
-        return ("nose", *sides)
-    return (*sides, "leading_edge") if leading_edge_term else tuple(sides)
+    return (*["nose"] * shared, *sides, *["leading_edge"] * term)

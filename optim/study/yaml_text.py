@@ -18,7 +18,7 @@ import yaml
 from yaml.nodes import MappingNode, Node, ScalarNode, SequenceNode
 
 from optim.errors import Fault, StudyError
-from optim.study.units import shown
+from optim.study.units import legible, shown
 
 Path = tuple[str | int, ...]
 Place = tuple[int, int]
@@ -72,21 +72,26 @@ class _StudyLoader(yaml.SafeLoader):
         super().__init__(text)
         self.depth = 0
         self.aliases = 0
+        self.nodes = 0
 
     def compose_node(self, parent: Node | None, index: int) -> Node | None:
         """Compose one node unless the text is nested too deeply or repeats itself too often."""
         if self.check_event(yaml.AliasEvent):
             self.aliases += 1
-        if self.aliases > MOST_ALIASES or self.depth > DEEPEST:
-            mark = self.peek_event().start_mark  # type: ignore[no-untyped-call]
-            bound = f"more than {MOST_ALIASES} aliases" if self.depth <= DEEPEST else (
-                f"more than {DEEPEST} levels of nesting"
-            )  # fmt: skip
-            raise yaml.composer.ComposerError(None, None, bound, mark)
+        self.nodes += 1
+        self.check_bound(self.aliases, MOST_ALIASES, "aliases")
+        self.check_bound(self.depth, DEEPEST, "levels of nesting")
+        self.check_bound(self.nodes, 2 * MOST_VALUES, "keys and values")
         self.depth += 1
         node = super().compose_node(parent, index)
         self.depth -= 1
         return node
+
+    def check_bound(self, found: int, most: int, what: str) -> None:
+        """Stop where the text goes beyond a bound."""
+        if found > most:
+            mark = self.peek_event().start_mark  # type: ignore[no-untyped-call]
+            raise yaml.composer.ComposerError(None, None, f"more than {most} {what}", mark)
 
 
 class _StudyDumper(yaml.SafeDumper):
@@ -225,7 +230,7 @@ def _not_yaml(error: yaml.MarkedYAMLError, file: str) -> Fault:
 
 def fault_at(path: Path, message: str, file: str, place: Place | None) -> Fault:
     """Return a fault whose sentence starts with the dotted path of what it is about."""
-    dotted = ".".join(str(step) for step in path)
+    dotted = ".".join(legible(str(step)) for step in path)
     line, column = place or (None, None)
     return Fault(f"{dotted}: {message}" if dotted else message, path, file, line, column)
 
