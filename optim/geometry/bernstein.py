@@ -1,7 +1,12 @@
 """Bernstein polynomials: the smooth, non-negative basis of both parameterisations.
 
-B(i, n; x) = binomial(n, i) x**i (1 - x)**(n - i), written in powers of x. Up to the degrees used
-here (14) the change of basis loses three digits of sixteen.
+B(i, n; x) = binomial(n, i) x**i (1 - x)**(n - i). A sum of them is differentiated and raised in
+degree on its coefficients, so everything is evaluated in this basis, whose sums are convex
+combinations; in powers of x the degree 14 would lose five digits.
+
+References
+----------
+Farin, Curves and Surfaces for CAGD, 5th ed., 2002, sections 5.3 (derivatives), 6.1 (degree).
 """
 
 from __future__ import annotations
@@ -15,31 +20,24 @@ from optim.arrays import FloatArray, frozen
 
 
 @lru_cache(maxsize=32)
-def to_powers(degree: int) -> FloatArray:
-    """Return the matrix from Bernstein to power coefficients, (degree + 1, degree + 1).
-
-    Column i holds the coefficients of B(i, degree) by rising power.
-    """
-    matrix = np.zeros((degree + 1, degree + 1))
-    for i in range(degree + 1):
-        for j in range(i, degree + 1):
-            matrix[j, i] = comb(degree, i) * comb(degree - i, j - i) * (-1) ** (j - i)
-    return frozen(matrix)
-
-
-@lru_cache(maxsize=64)
-def differentiation(terms: int, order: int) -> FloatArray:
-    """Return the matrix that differentiates power coefficients `order` times, (terms, terms)."""
-    once = np.diag(np.arange(1.0, terms), k=1)
-    return frozen(np.linalg.matrix_power(once, order))
+def _binomials(degree: int) -> FloatArray:
+    return frozen(np.array([comb(degree, i) for i in range(degree + 1)]))
 
 
 def evaluate(degree: int, x: FloatArray) -> FloatArray:
     """Return all Bernstein polynomials of one degree at `x`, (n, degree + 1) [-]."""
-    i = np.arange(degree + 1)
-    binomials = np.array([comb(degree, k) for k in range(degree + 1)], dtype=np.float64)
-    values = binomials * x[:, None] ** i * (1.0 - x[:, None]) ** (degree - i)
-    return np.asarray(values, dtype=np.float64)
+    rising = np.vander(x, degree + 1, increasing=True)
+    falling = np.vander(1.0 - x, degree + 1)
+    return np.asarray(_binomials(degree) * rising * falling, dtype=np.float64)
+
+
+def raised(coefficients: FloatArray, degree: int) -> FloatArray:
+    """Return the coefficients of the same polynomial at a higher degree, (degree + 1,)."""
+    c = coefficients
+    for n in range(c.size, degree + 1):
+        share = np.arange(n + 1) / n
+        c = share * np.concatenate([[0.0], c]) + (1.0 - share) * np.concatenate([c, [0.0]])
+    return c
 
 
 class TwoSides:
@@ -52,15 +50,13 @@ class TwoSides:
     """
 
     def __init__(self, upper: FloatArray, lower: FloatArray) -> None:
-        terms = max(upper.size, lower.size)
-        powers = np.zeros((terms, 2))
-        for side, coefficients in enumerate((upper, lower)):
-            powers[: coefficients.size, side] = to_powers(coefficients.size - 1) @ coefficients
-        self._columns = np.hstack([differentiation(terms, k) @ powers for k in range(3)])
-        self._terms = terms
+        self._degree = max(upper.size, lower.size) - 1
+        values = np.column_stack([raised(upper, self._degree), raised(lower, self._degree)])
+        slopes = self._degree * np.diff(values, axis=0)
+        self._coefficients = (values, slopes, (self._degree - 1) * np.diff(slopes, axis=0))
 
-    def derivatives(self, x: FloatArray, is_upper: FloatArray, order: int) -> FloatArray:
-        """Return the values and derivatives in x up to `order`, (order + 1, n).
+    def derivatives(self, x: FloatArray, is_upper: FloatArray, order: int) -> list[FloatArray]:
+        """Return the values and derivatives in x up to `order`, each (n,).
 
         Parameters
         ----------
@@ -71,7 +67,12 @@ class TwoSides:
         order : int
             0, 1 or 2.
         """
-        powers = np.vander(x, self._terms, increasing=True)
-        both = (powers @ self._columns[:, : 2 * (order + 1)]).T
-        upper, lower = both[0::2], both[1::2]
-        return np.asarray(lower + is_upper * (upper - lower), dtype=np.float64)
+        rising = np.vander(x, self._degree + 1, increasing=True)
+        falling = np.vander(1.0 - x, self._degree + 1)
+        found = []
+        for k in range(order + 1):
+            n = self._degree - k
+            basis = _binomials(n) * rising[:, : n + 1] * falling[:, k:]
+            upper, lower = (basis @ self._coefficients[k]).T
+            found.append(np.where(is_upper > 0.0, upper, lower))
+        return found

@@ -51,7 +51,7 @@ class BezierCurve(Curve):
         """Return the point and its derivatives in t up to `order`, each (n, 2) [chords]."""
         t = np.asarray(t, dtype=np.float64)
         is_upper = np.asarray(t < 0.0, dtype=np.float64)
-        y = list(self.ordinates.derivatives(np.abs(t), is_upper, order))
+        y = self.ordinates.derivatives(np.abs(t), is_upper, order)
         if order > 0:
             y[1] = y[1] * (1.0 - 2.0 * is_upper)  # du/dt is -1 on the upper side
         return square_abscissa(t, y)

@@ -28,6 +28,9 @@ NEWTON_STEPS = 12
 ROUNDING = 1e-14
 """Abscissas this close are equal [chords]."""
 
+SETTLED = 1e-8
+"""Newton's step in x after which an extreme is found to rounding, as the next is its square."""
+
 LEAST_SLOPE = 1e-9
 """dx/dt below which a station is left where it is: the nose, where x has its least [chords]."""
 
@@ -166,7 +169,7 @@ def extreme(
             target = 0.5 * (low + high)
         moved = np.array([(target - xu) / dxu, (target - xl) / dxl])
         t = np.clip(t + moved, -1.0, 1.0)
-        if max(abs(target - xu), abs(target - xl)) < ROUNDING:
+        if max(abs(target - xu), abs(target - xl)) < SETTLED:
             break
     point = curve.point(t)
     return Extreme(float(a * point[0, 1] + b * point[1, 1]), float(point[0, 0]))

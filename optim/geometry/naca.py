@@ -61,7 +61,7 @@ FIVE_DIGIT_LINES = {
 
 ACCEPTED = (
     "accepted are four digits (2412), four digits with nose index and place of thickness "
-    "(0012-64: index 0 to 9, place 2 to 6) and five digits (23012: second digit 1 to 5, third 0; "
+    "(0012-64: index 1 to 9, place 2 to 6) and five digits (23012: second digit 1 to 5, third 0; "
     "reflexed 23112: second digit 2 to 5, third 1)"
 )
 
