@@ -130,9 +130,7 @@ def _objectives(draft: Draft) -> Found:
             yield path, f"{objective.name} is objectives.{first} already; leave one out."
 
 
-def _flow_objective(
-    draft: Draft, objective: Objective, quantity: Quantity, path: Path
-) -> Found:
+def _flow_objective(draft: Draft, objective: Objective, quantity: Quantity, path: Path) -> Found:
     if not draft.written(*path, "at"):
         yield path, f"{quantity.name} belongs to a condition; name it with at: {_names(draft)}."
     elif objective.place is not None:
@@ -164,9 +162,7 @@ def _reference(objective: Objective, path: Path, name: str) -> Path:
     return (*path, "at", name) if isinstance(objective.at, dict) else (*path, "at")
 
 
-def _section_objective(
-    draft: Draft, objective: Objective, quantity: Quantity, path: Path
-) -> Found:
+def _section_objective(draft: Draft, objective: Objective, quantity: Quantity, path: Path) -> Found:
     written = draft.written(*path, "at")
     if quantity.needs_at and not written:
         yield path, f"{quantity.name} takes a place x/c, such as at: 30 %."

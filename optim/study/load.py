@@ -212,8 +212,19 @@ def _form(kind: str, path: yaml_text.Path, found: object) -> str:
 
 def _unknown_key(key: str, block: type[BaseModel]) -> str:
     known = list(block.model_fields)
-    near = did_you_mean(key, known)
-    return f"there is no such key; accepted is {', '.join(known)}{near or '.'}"
+    near = _home_of(key) or did_you_mean(key, known) or "."
+    return f"there is no such key; accepted is {', '.join(known)}{near}"
+
+
+def _home_of(key: str) -> str:
+    """Say which block of a study a key belongs in; empty if in none."""
+    if key in Study.model_fields:
+        return f"; {key} belongs to the study itself, at the left margin."
+    for name in Study.model_fields:
+        block = _block_at((name,)) or _block_at((name, 0))
+        if block is not None and key in block.model_fields:
+            return f"; {key} belongs in {name}."
+    return ""
 
 
 def _described(block: type[BaseModel], key: str) -> str:

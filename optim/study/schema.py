@@ -125,12 +125,12 @@ class SectionSettings(Block):
         description="The section that the search starts around and that the front is drawn "
         "against: naca:2412, or a coordinate file named relative to the study file."
     )
-    baseline_coordinates: Annotated[
-        tuple[tuple[float, float], ...] | None, CoordinateText()
-    ] = Field(
-        default=None,
-        description="Text of a coordinate file, given here in place of reading the file that "
-        "baseline names; written by the tool so that an archived study needs no other file.",
+    baseline_coordinates: Annotated[tuple[tuple[float, float], ...] | None, CoordinateText()] = (
+        Field(
+            default=None,
+            description="Text of a coordinate file, given here in place of reading the file that "
+            "baseline names; written by the tool so that an archived study needs no other file.",
+        )
     )
     freedom: Annotated[float, Measure(FRACTION, more_than=0.0, at_most=1.0)] = Field(
         default=0.1,
@@ -376,9 +376,7 @@ class Study(Block):
 
     study: Annotated[str, STUDY_NAME] = Field(description="Name of the study.")
     section: SectionSettings = Field(description="The section's description and baseline.")
-    chord: Annotated[float, CHORD] = Field(
-        description="Chord of the section as built."
-    )
+    chord: Annotated[float, CHORD] = Field(description="Chord of the section as built.")
     air: Air | None = Field(default=None, description="The air that the conditions are flown in.")
     water: Water | None = Field(default=None, description="The water, in place of air.")
     craft: Craft | None = Field(default=None, description="The craft, for level flight.")

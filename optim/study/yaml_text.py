@@ -279,9 +279,7 @@ class _Walk:
             ]
         return self.mapping(node, path, (*above, node))
 
-    def mapping(
-        self, node: Node, path: Path, above: tuple[Node, ...]
-    ) -> dict[str, Any]:
+    def mapping(self, node: Node, path: Path, above: tuple[Node, ...]) -> dict[str, Any]:
         """Return a mapping; a key given twice is a fault, merged keys stand back."""
         data: dict[str, Any] = {}
         first: dict[str, Node] = {}

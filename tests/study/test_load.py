@@ -129,6 +129,21 @@ def test_one_wrong_value_is_one_line_at_its_place(
     assert all(fragment in line for fragment in fragments), line
 
 
+@pytest.mark.parametrize(
+    ("old", "new", "home"),
+    [
+        ("n_factor: 9", "^population: 40", "population belongs in search."),
+        ("n_factor: 9", "^load_factor: 2", "load_factor belongs in conditions."),
+        ("seed: 7", "^craft: {}", "craft belongs to the study itself, at the left margin."),
+    ],
+)
+def test_a_key_in_the_wrong_block_is_told_where_it_belongs(old, new, home, mark, faults) -> None:
+    text, place = mark(old, new)
+    (line,) = faults(text)
+    assert line.startswith(f"s.yaml:{place}: ")
+    assert line.endswith(home)
+
+
 def test_a_misspelt_key_is_told_beside_the_one_that_is_missing(change, faults) -> None:
     lines = faults(change("study: toll", "studie: toll"))
     assert len(lines) == 2

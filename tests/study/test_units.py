@@ -75,7 +75,7 @@ def test_texts_are_read_to_the_nearest_float(text, dimension, expected) -> None:
 
 @given(st.integers(1, 10**6))
 def test_millimetres_are_read_as_the_decimal_is_written(thousandths: int) -> None:
-    """"212 mm" is the same float as 0.212, so that both spellings are the same study."""
+    """ "212 mm" is the same float as 0.212, so that both spellings are the same study."""
     written = float(Fraction(thousandths, 1000))
     assert read(f"{thousandths} mm", units.LENGTH) == written
 

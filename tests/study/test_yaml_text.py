@@ -129,9 +129,7 @@ def test_a_key_given_twice_names_both_lines() -> None:
 
 def test_keys_are_texts_as_written() -> None:
     assert parse("NO: 1\n1: 2\n1.50: 3\n", "s").data == {"NO": 1, "1": 2, "1.50": 3}
-    assert faults_of("? [a, b]\n: 1\n") == [
-        "s.yaml:1:3: a key is a text, such as chord: 212 mm."
-    ]
+    assert faults_of("? [a, b]\n: 1\n") == ["s.yaml:1:3: a key is a text, such as chord: 212 mm."]
 
 
 @pytest.mark.parametrize(
