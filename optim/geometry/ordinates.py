@@ -79,6 +79,8 @@ def contour(xy: FloatArray) -> tuple[FloatArray, list[str]]:
     if area < 0.0:
         points = points[::-1].copy()
         notes.append("The points ran along the lower side first; they were turned round.")
+    if np.hypot(*(points[0] - points[-1])) <= REPEATED * size:
+        points[-1] = points[0]  # closed but for rounding, which might cross the ends
     _look_for_crossings(points, size)
     return points, notes
 
