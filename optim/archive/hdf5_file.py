@@ -7,6 +7,7 @@ other attribute of the file, so that a flipped bit anywhere is found or harmless
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from pathlib import Path
 
 import h5py
@@ -49,11 +50,11 @@ def attribute_text(target: h5py.Group | h5py.Dataset, name: str) -> str:
     return bytes(value).decode("utf-8") if isinstance(value, bytes | np.bytes_) else str(value)
 
 
-def _paths(file: h5py.File) -> list[str]:
-    """Return the paths of all groups and datasets but the root, in their order."""
-    paths: list[str] = []
-    file.visit(lambda path: paths.append(f"/{path}"))
-    return sorted(paths)
+def _objects(file: h5py.File) -> dict[str, h5py.Group | h5py.Dataset]:
+    """Return all groups and datasets but the root by their paths."""
+    found: dict[str, h5py.Group | h5py.Dataset] = {}
+    file.visititems(lambda path, item: found.__setitem__(f"/{path}", item))
+    return found
 
 
 def read_plain(dataset: h5py.Dataset, rows: slice | None = None) -> Array:
@@ -82,15 +83,18 @@ def dataset_digest(dataset: h5py.Dataset) -> str:
 
 def manifest_digest(file: h5py.File) -> str:
     """Return the digest over every object and attribute of the file but the one that holds it."""
-    paths = ["/", *_paths(file)]
-    objects = [(path, type(file[path]).__name__) for path in paths]
+    return _manifest({"/": file, **_objects(file)})
+
+
+def _manifest(objects: Mapping[str, h5py.Group | h5py.Dataset]) -> str:
+    kinds = [(path, type(item).__name__) for path, item in objects.items()]
     attributes = [
         (f"{path}@{name}", np.asarray(value).tobytes().hex())
-        for path in paths
-        for name, value in file[path].attrs.items()
+        for path, item in objects.items()
+        for name, value in item.attrs.items()
         if (path, name) != ("/", DIGEST)
     ]
-    return combined_digest(objects + attributes)
+    return combined_digest(kinds + attributes)
 
 
 def open_file(path: Path) -> h5py.File:
@@ -144,8 +148,9 @@ def verified_digests(file: h5py.File, path_of_file: Path) -> dict[str, str]:
         If anything differs; what is intact is said.
     """
     try:
-        whole = manifest_digest(file) == attribute_text(file, DIGEST)
-        paths = [path for path in _paths(file) if isinstance(file[path], h5py.Dataset)]
+        objects = _objects(file)
+        whole = _manifest({"/": file, **objects}) == attribute_text(file, DIGEST)
+        paths = sorted(path for path, item in objects.items() if isinstance(item, h5py.Dataset))
     except READABLE:
         whole, paths = False, sorted(BY_PATH)
     digests = {path: _sound_digest(file, path) for path in paths}
@@ -158,8 +163,9 @@ def verified_digests(file: h5py.File, path_of_file: Path) -> dict[str, str]:
 def _sound_digest(file: h5py.File, path: str) -> str:
     """Return the digest of a dataset if it is the stored one, else an empty text."""
     try:
-        digest = dataset_digest(file[path])
-        return digest if digest == attribute_text(file[path], DIGEST) else ""
+        dataset = file[path]
+        digest = dataset_digest(dataset)
+        return digest if digest == attribute_text(dataset, DIGEST) else ""
     except READABLE:
         return ""
 

@@ -22,7 +22,7 @@ import numpy as np
 from optim.archive.digest import array_digest, combined_digest
 from optim.archive.items import Array, Items, plain_dtype, text_array
 from optim.archive.layout import BY_FIELD, FORMAT_VERSION, RECORD, STATE_JSON
-from optim.errors import ArchiveDamagedError, ArchiveVersionError, Fault
+from optim.errors import ArchiveDamagedError, ArchiveVersionError, Fault, StoppedEarlyError
 
 Ending = Literal["running", "stopped", "finished"]
 
@@ -104,6 +104,11 @@ class JournalView:
         try:
             yield self._db
         except _READABLE as error:
+            if getattr(error, "sqlite_errorcode", None) == sqlite3.SQLITE_BUSY:
+                raise StoppedEarlyError(
+                    f"{self.path}: another program is holding the journal; nothing is lost, "
+                    "try again when it has let go."
+                ) from error
             raise ArchiveDamagedError(f"{self.path}: the journal is damaged ({error}).") from error
 
     @contextlib.contextmanager
@@ -149,7 +154,7 @@ class JournalView:
     def session_texts(self) -> tuple[str, ...]:
         """Return the record of every start and resume as JSON."""
         with self._read() as db:
-            rows = db.execute("SELECT record FROM session ORDER BY number")
+            rows = db.execute("SELECT record FROM session ORDER BY number").fetchall()
             return tuple(str(record) for (record,) in rows)
 
     def history(self, field: str) -> Array:
@@ -165,7 +170,7 @@ class JournalView:
             "WHERE path = ? ORDER BY generation"
         )
         with self._read() as db:
-            rows = db.execute(query, (BY_FIELD[field].path,))
+            rows = db.execute(query, (BY_FIELD[field].path,)).fetchall()
             blocks = [_checked(str(generation), row) for generation, *row in rows]
         return np.concatenate(blocks) if blocks else np.empty(0)
 
@@ -205,7 +210,8 @@ class JournalView:
             ) from error
 
     def _items(self, table: str, query: str, *arguments: int) -> Items:
-        rows = self._db.execute(query, arguments)
+        # Fetched whole: a query that an error leaves half way keeps the file locked.
+        rows = self._db.execute(query, arguments).fetchall()
         return {row[0]: _checked(table, row) for row in rows}
 
     def _sessions_digest(self) -> str:

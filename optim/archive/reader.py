@@ -350,7 +350,7 @@ def _open_journal(run: Path) -> Run:
     try:
         with view_journal(run) as view, tempfile.TemporaryDirectory() as folder:
             snapshot = Path(folder) / run.name
-            digests = derive(view, snapshot, compressed=False)
+            digests = derive(view, snapshot, lasting=False)
             with contextlib.ExitStack() as undo:
                 # Once open, the file outlives its name.
                 file = undo.enter_context(h5py.File(snapshot, "r"))

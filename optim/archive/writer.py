@@ -94,7 +94,7 @@ def write_archive(view: JournalView, run: Path) -> None:
     temporary = run.with_name(run.name + ".tmp")
     _check_room(view, run)
     try:
-        expected = derive(view, temporary, compressed=True)
+        expected = derive(view, temporary, lasting=True)
         _verify(temporary, expected)
         with temporary.open("rb") as written:
             os.fsync(written.fileno())
@@ -126,7 +126,7 @@ def _verify(path: Path, expected: dict[str, str]) -> None:
         raise ArchiveDamagedError(f"{path}: does not read back as it was written.")
 
 
-def derive(view: JournalView, path: Path, *, compressed: bool) -> dict[str, str]:
+def derive(view: JournalView, path: Path, *, lasting: bool) -> dict[str, str]:
     """Lay the journal's items end to end in an HDF5 file.
 
     Parameters
@@ -135,8 +135,8 @@ def derive(view: JournalView, path: Path, *, compressed: bool) -> dict[str, str]
         The journal; it is read as it was at one moment.
     path : Path
         The file to write.
-    compressed : bool
-        Packed to stay, or plain for a snapshot that is read once.
+    lasting : bool
+        Packed, described and sealed to stay, or plain for a snapshot that is read once.
 
     Returns
     -------
@@ -148,35 +148,42 @@ def derive(view: JournalView, path: Path, *, compressed: bool) -> dict[str, str]
         h5py.File(path, "w", libver=LIBRARY_VERSIONS, rdcc_nbytes=MOST_CHUNK_BYTES) as file,
     ):
         seal = view.seal()
-        _describe(file, seal)
         sessions = text_array(f"[{', '.join(view.session_texts())}]")
         fixed = {**view.header_items(), **view.state_items(), SESSIONS.path: sessions}
         digests = {place: _put_fixed(file, place, array) for place, array in fixed.items()}
-        digests |= _put_growing(file, view, seal, compressed=compressed)
-        for place, digest in digests.items():
-            set_text(file[place], DIGEST, digest)
-        set_text(file, DIGEST, manifest_digest(file))
+        digests |= _put_growing(file, view, seal, compressed=lasting)
+        _identify(file, seal)
+        if lasting:
+            _describe(file, digests)
     return digests
 
 
-def _describe(file: h5py.File, seal: Seal) -> None:
+def _identify(file: h5py.File, seal: Seal) -> None:
     set_text(file, "format", FORMAT)
     file.attrs["format_version"] = np.int64(FORMAT_VERSION)
     set_text(file, "written_by", f"sectionwright {__version__}")
     set_text(file, "ending", seal.ending)
     file.attrs["generations"] = np.int64(seal.generations)
     file.attrs["evaluations"] = np.int64(seal.evaluations)
-    for name, sentence in GROUPS.items():
-        set_text(file.create_group(name), "description", sentence)
 
 
 def _put_fixed(file: h5py.File, path: str, array: Array) -> str:
     data = array
     if array.dtype.kind == "S":
         data = array.astype(h5py.string_dtype("utf-8", array.dtype.itemsize))
-    dataset = file.create_dataset(path, data=data, track_times=False)
-    _annotate(dataset, BY_PATH.get(path, _state_array(path)))
+    file.create_dataset(path, data=data, track_times=False)
     return array_digest(array)
+
+
+def _describe(file: h5py.File, digests: dict[str, str]) -> None:
+    """Say of every group and dataset what it is, then seal all of it."""
+    for name, sentence in GROUPS.items():
+        set_text(file.require_group(name), "description", sentence)
+    for path, digest in digests.items():
+        dataset = file[path]
+        set_text(dataset, DIGEST, digest)
+        _annotate(dataset, BY_PATH.get(path, _state_array(path)))
+    set_text(file, DIGEST, manifest_digest(file))
 
 
 def _state_array(path: str) -> Dataset:
@@ -243,7 +250,6 @@ class _Column:
         self._filled = 0
         self._waiting: list[Array] = []
         self._digest = RowDigest()
-        _annotate(self._dataset, described)
 
     def add(self, block: Array) -> None:
         """Put a block below the last one."""
