@@ -9,7 +9,7 @@ section.Section, section.section_from_coordinates
 naca.naca_section
     "2412", "0012-64", "23012", "23112" as published.
 cst.Cst, bezier.Bezier
-    The parameterisations, behind parameterisation.Parameterisation: names, bounds, section, fit.
+    The parameterisations, behind parameterisation.Parameterisation: names, bounds, section.
 fitting.fit
     The design closest to a section, with its normal deviations.
 validity.faults

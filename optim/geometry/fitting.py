@@ -22,17 +22,14 @@ minimization", ACM Trans. Graphics 25 (2), 2006: tangent-distance minimisation a
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
 
 import numpy as np
 
 from optim.arrays import FloatArray, frozen
 from optim.geometry.chordline import ChordLine, chord_line
 from optim.geometry.curve import Curve, cosine_parameters
-
-if TYPE_CHECKING:
-    from optim.geometry.parameterisation import Parameterisation
-    from optim.geometry.section import Section
+from optim.geometry.parameterisation import Parameterisation
+from optim.geometry.section import Section
 
 FITTED = 240
 """Intervals of full cosine spacing between the fitted samples."""

@@ -2,7 +2,7 @@
 
 Thickness is measured across the chord: depth(x) = y_upper(x) - y_lower(x), the height a spar finds
 at a station, and the mean line is halfway between the sides at one x. The NACA reports measure
-both across the mean line; for sections to 6 % camber the two agree to 0.1 % of the thickness,
+both across the mean line; for sections to 6 % camber the two agree to 0.3 % of the thickness,
 because the mean line is nearly level where the thickness is greatest (tests/geometry/test_naca.py
 measures it). Only the first kind answers "does the spar fit", so it is the one used.
 """

@@ -1,4 +1,4 @@
-"""What every parameterisation answers: names, a section for a design, a fit and bounds.
+"""What every parameterisation answers: names, a section for a design and bounds.
 
 Every parameterisation here is linear in its design: the curve at a parameter t is a fixed point
 plus a sum of fixed vectors times the variables. Sections are then made by one product of
@@ -11,7 +11,6 @@ from __future__ import annotations
 from abc import ABC, abstractmethod
 
 from optim.arrays import FloatArray, check_finite, check_shape
-from optim.geometry import fitting
 from optim.geometry.section import Section
 
 
@@ -64,10 +63,6 @@ class Parameterisation(ABC):
     @abstractmethod
     def reach(self) -> FloatArray:
         """Step of each variable that counts as one unit of freedom, (n_variables,) [chords]."""
-
-    def fit(self, section: Section) -> FloatArray:
-        """Return the design closest to a section, (n,) [chords]; see `fitting.fit`."""
-        return fitting.fit(self, section).design
 
     def bounds(self, design: FloatArray, freedom: float) -> tuple[FloatArray, FloatArray]:
         """Return the lower and upper bounds of a search about a design.

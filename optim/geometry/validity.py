@@ -3,15 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Literal
+from typing import Literal, Protocol
 
 import numpy as np
 
 from optim.arrays import FloatArray
 from optim.geometry import polygon
-
-if TYPE_CHECKING:
-    from optim.geometry.section import Section
+from optim.geometry.curve import Curve
+from optim.geometry.measures import Samples
 
 FaultKind = Literal["not_finite", "fold", "crossing", "inside_out", "no_thickness", "spike"]
 
@@ -48,7 +47,27 @@ class SectionFault:
     sentence: str
 
 
-def faults(section: Section) -> tuple[SectionFault, ...]:
+class Contour(Protocol):
+    """What is looked at: a Section, which may not be imported here, as it asks for its faults."""
+
+    @property
+    def curve(self) -> Curve:
+        """The exact contour."""
+
+    @property
+    def samples(self) -> Samples:
+        """The curve at full cosine spacing."""
+
+    @property
+    def sampled_sides(self) -> tuple[FloatArray, FloatArray, FloatArray]:
+        """Parameters of the two sides at equal stations, and those stations."""
+
+    @property
+    def sampled_ordinates(self) -> tuple[FloatArray, FloatArray]:
+        """Ordinates of the two sides at those stations [chords]."""
+
+
+def faults(section: Contour) -> tuple[SectionFault, ...]:
     """Return the faults of a contour in the order of their kinds, none if it is a section."""
     samples = section.samples
     finite = np.isfinite(samples.point).all(axis=1)
@@ -87,7 +106,7 @@ def _crossing(x: float) -> SectionFault:
     return SectionFault("crossing", x, f"The contour crosses itself at x = {x:.4f}.")
 
 
-def _depths(section: Section) -> list[SectionFault]:
+def _depths(section: Contour) -> list[SectionFault]:
     """Return the faults that show in the depth, for sides with one ordinate at each x."""
     x = section.sampled_sides[2]
     upper, lower = section.sampled_ordinates

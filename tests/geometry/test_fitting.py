@@ -88,7 +88,7 @@ def test_frame_of_the_section_does_not_matter():
     turned, _ = section_from_coordinates(3 * points @ np.array([[c, s], [-s, c]]) + 7, "turned")
     shape = Cst(8, 8, section.trailing_edge_gap, leading_edge_term=True)
     t = np.linspace(-1, 1, 201)
-    contours = [shape.section(shape.fit(s)).points(t) for s in (turned, section)]
+    contours = [shape.section(fit(shape, s).design).points(t) for s in (turned, section)]
     assert contours[0] == pytest.approx(contours[1], abs=2e-5)
 
 

@@ -33,7 +33,7 @@ def shape(request):
 
 @pytest.fixture
 def design(shape):
-    return shape.fit(naca_section("2412"))
+    return fit(shape, naca_section("2412")).design
 
 
 def test_names_are_unique_and_one_for_each_variable(shape, design):
@@ -134,7 +134,7 @@ def test_any_design_in_bounds_is_a_section_or_has_a_named_fault(name, seed, free
     """Shapely judges: a contour without faults is a simple polygon, one that it calls crossing has
     a fault. Only crossings smaller than the polygon resolves may differ."""
     shape = EVERY[name]
-    lower, upper = shape.bounds(shape.fit(naca_section("2412")), freedom)
+    lower, upper = shape.bounds(fit(shape, naca_section("2412")).design, freedom)
     section = shape.section(np.random.default_rng(seed).uniform(lower, upper))
     found = faults(section)
     t = -np.cos(np.linspace(0, np.pi, 481))
@@ -181,7 +181,7 @@ def test_plain_cst_states_the_smaller_nose_radius():
 
 @pytest.mark.parametrize("shape", [Cst(6, 7, leading_edge_term=True), Bezier(6, 7)])
 def test_shared_nose_has_no_step_in_curvature(shape):
-    design = shape.fit(naca_section("4412"))
+    design = fit(shape, naca_section("4412")).design
     section = shape.section(design)
     beside = section.curvature(np.array([-1e-9, 1e-9]))
     assert beside[0] == pytest.approx(beside[1], rel=1e-6)
