@@ -58,7 +58,7 @@ def with_search(study: Study, **changes: object) -> Study:
         If a setting is out of its range.
     """
     given = {name: value for name, value in changes.items() if value is not None}
-    search = study.search.model_dump() | given
+    search = study.search.model_dump(exclude_none=True) | given
     return study.model_copy(update={"search": SearchSettings.model_validate(search)})
 
 
