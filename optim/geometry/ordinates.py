@@ -1,8 +1,8 @@
 """Points of a section file -> contour order, chord line on the x axis, chord 1.
 
-Accepted are one chain around the contour in either sense, from the edge or from the nose, and two
-chains, one a side, each from the nose or each from the edge. The chord line runs from the middle
-of the edge to the point of the curve farthest from it. Whatever is changed is said.
+Accepted are one chain around the contour in either sense, from the edge or closed from elsewhere,
+and two chains, one a side, each from the nose or each from the edge. The chord line runs from the
+middle of the edge to the point of the curve farthest from it. Whatever is changed is said.
 """
 
 from __future__ import annotations
@@ -23,6 +23,10 @@ hundred describe the noise of a digitiser."""
 
 JUMP = 0.5
 """Two neighbours farther apart than this belong to two chains [box lengths]."""
+
+EDGE = 0.02
+"""A chain whose ends are this close to its farthest abscissa starts at the edge [box lengths]; rule
+of thumb."""
 
 STEEP = 5.0
 """An end piece this much steeper than long belongs to the base of an open edge; rule of thumb."""
@@ -137,24 +141,32 @@ def _without_repeats(points: FloatArray, size: float, notes: list[str]) -> Float
 
 
 def _from_the_edge(points: FloatArray, size: float, notes: list[str]) -> FloatArray:
-    """Return a chain that starts at the nose as one that starts at the edge."""
-    ends = points[[0, -1], 0]
-    if ends.max() > points[:, 0].min() + JUMP * size:
+    """Return a closed chain that starts at the nose or on a side as one from the edge."""
+    if points[[0, -1], 0].max() >= points[:, 0].max() - EDGE * size:
         return points
-    leaving, arriving = points[1] - points[0], points[-1] - points[-2]
-    if leaving @ arriving < 0.0:  # a chain runs through a round nose, and turns back at an edge
+    if _turns_back(points):
         raise refused("The edge of the section lies ahead of its nose; x runs from nose to edge.")
     if np.hypot(*(points[0] - points[-1])) <= REPEATED * size:
         points = points[:-1]
     edge = int(np.argmax(points[:, 0]))
     following = points[(edge + 1) % points.shape[0]]
-    rest = np.roll(points, -edge, axis=0)
-    notes.append("The points started at the nose; the chain was made to start at the edge.")
+    chain = np.roll(points, -edge, axis=0)
     if _is_base(points[edge], following, size):
-        return np.roll(rest, -1, axis=0)
-    if _is_base(points[edge - 1], points[edge], size):
-        return rest
-    return np.concatenate([rest, rest[:1]])
+        chain = np.roll(chain, -1, axis=0)
+    elif not _is_base(points[edge - 1], points[edge], size):
+        chain = np.concatenate([chain, chain[:1]])
+    if not _turns_back(chain):
+        raise refused(
+            "The contour is round where x is largest; a chain that does not start at its edge "
+            "must turn back there."
+        )
+    notes.append("The points did not start at the edge; the closed chain was made to start there.")
+    return chain
+
+
+def _turns_back(chain: FloatArray) -> bool:
+    """Whether a chain ends against the direction in which it starts, as it does at an edge."""
+    return bool((chain[1] - chain[0]) @ (chain[-1] - chain[-2]) < 0.0)
 
 
 def _is_base(a: FloatArray, b: FloatArray, size: float) -> bool:

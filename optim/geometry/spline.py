@@ -91,7 +91,9 @@ def through(points: FloatArray) -> tuple[SplineCurve, float, int]:
     smooth = points
     for _ in range(ROUNDS):
         t = _parameters(curve, nose, chord)
-        smooth = graduated(np.arccos(-t), points)
+        # The rounds may bring points closer again; the filter then sees them a little apart.
+        apart = np.maximum(np.diff(np.arccos(-t)), CLOSEST / 3.0)
+        smooth = graduated(np.concatenate([[0.0], np.cumsum(apart)]), points)
         curve = SplineCurve(CubicSpline(t, smooth))
         nose = chord_line(curve, 0.0).t
     # What is left between the nose and t = 0 is a matter of names: the ends stay, the nose moves.

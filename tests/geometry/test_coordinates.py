@@ -8,6 +8,7 @@ from optim.errors import SectionError
 from optim.geometry.graduation import CUTOFF, graduated
 from optim.geometry.naca import naca_section
 from optim.geometry.section import section_from_coordinates
+from optim.geometry.validity import faults
 
 TABULATED = ["naca63_415", "e387", "s809", "nlf0416"]
 
@@ -41,12 +42,13 @@ def rearranged(points):
         ),
         "from the nose": (
             np.concatenate([points[nose:], points[: nose + 1]]),
-            "started at the nose",
+            "did not start at the edge",
         ),
         "from the nose, the other way": (
             np.concatenate([points[nose::-1], points[: nose - 1 : -1]]),
-            "started at the nose",
+            "did not start at the edge",
         ),
+        "from a station of a side": (np.roll(points, 30, axis=0), "did not start at the edge"),
         "closed by its first point": (np.concatenate([points, points[:1]]), "base"),
         "base with a middle": (np.concatenate([[[1, 0]], points, [[1, 0]]]), "base"),
         "points repeated": (np.repeat(points, 2, axis=0), "Repeated points were left out: 101"),
@@ -97,6 +99,24 @@ def test_chord_line_runs_from_the_farthest_point_to_the_middle_of_the_edge(plain
     reach = np.hypot(*(section.points(np.linspace(-1, 1, 20001)) - edge).T)
     assert reach.max() == pytest.approx(1.0, abs=1e-12)
     assert section.points(np.array([0.0]))[0] == pytest.approx([0.0, 0.0], abs=1e-8)
+
+
+@pytest.mark.parametrize("seed", range(40))
+def test_any_points_are_a_section_or_refused(seed):
+    """Noise, rounding and missing points: a finite answer or SectionError, never another end."""
+    rng = np.random.default_rng(seed)
+    points = naca_section("4412").points(-np.cos(np.linspace(0, np.pi, int(rng.integers(9, 150)))))
+    points = points + rng.normal(0, 10.0 ** rng.uniform(-7, -1), points.shape)
+    points = points[rng.random(len(points)) > rng.choice([0, 0.3])]
+    points = np.round(points, int(rng.integers(2, 9)))
+    points = np.roll(points, int(rng.choice([0, rng.integers(0, 50)])), axis=0)
+    try:
+        section, _ = section_from_coordinates(points, "any")
+    except SectionError:
+        return
+    assert faults(section) == ()
+    values = (section.thickness, section.camber, section.area, section.trailing_edge_gap)
+    assert np.isfinite(values).all()
 
 
 def test_nothing_is_said_where_nothing_was_changed():
@@ -235,6 +255,12 @@ def test_spike_is_named_with_its_point(points):
 def test_section_that_faces_backwards_is_refused(points):
     with pytest.raises(SectionError, match="ahead of its nose"):
         section_from_coordinates([1, 0] - points, "backwards")
+
+
+def test_closed_chain_without_an_edge_is_refused(points):
+    """Backwards and from a side: its round nose lies where the edge should."""
+    with pytest.raises(SectionError, match="round where x is largest"):
+        section_from_coordinates(np.roll([1, 0] - points, 25, axis=0), "backwards")
 
 
 def test_points_all_but_on_their_neighbours_are_left_out(points, plain):
