@@ -10,7 +10,7 @@ import numpy as np
 from optim.archive.journal import Journal
 from optim.arrays import FloatArray
 from optim.outcomes import Outcome
-from optim.problem.pareto import hypervolume, non_dominated
+from optim.problem.pareto import hypervolume
 from optim.search.termination import Progress
 
 
@@ -54,8 +54,6 @@ class Tally:
         One a generation.
     elapsed, last_duration : float
         Working time, and that of the last generation [s].
-    last : Judged or None
-        The last generation.
     """
 
     def __init__(self, reference_point: FloatArray) -> None:
@@ -67,7 +65,6 @@ class Tally:
         self.hypervolumes: list[float] = []
         self.elapsed = 0.0
         self.last_duration = 0.0
-        self.last: Judged | None = None
 
     @classmethod
     def of_journal(cls, journal: Journal) -> Tally:
@@ -80,16 +77,24 @@ class Tally:
                 items["/evaluations/design_outcome"],
                 int(items["/evaluations/points"].sum()),
             )
-            tally._count(generation)
+            for point in tally._count(generation):
+                tally._enter(point)
             tally.hypervolumes.append(float(items["/generations/hypervolume"][0]))
             tally.pass_time(float(items["/timing/generation_elapsed"][0]))
         return tally
 
     def add(self, generation: Judged) -> float:
-        """Add a generation and return the hypervolume with it."""
-        self._count(generation)
-        self.hypervolumes.append(hypervolume(self._front, self._reference))
-        return self.hypervolumes[-1]
+        """Add a generation and return the hypervolume with it.
+
+        It grows by what each new design of the front dominates alone: a front of thousands in
+        three objectives is not measured whole every time.
+        """
+        volume = self.hypervolumes[-1] if self.hypervolumes else 0.0
+        for point in self._count(generation):
+            volume += self._gain(point)
+            self._enter(point)
+        self.hypervolumes.append(volume)
+        return volume
 
     def pass_time(self, elapsed: float) -> None:
         """Note when the generation added last was done [s, working time of all sessions]."""
@@ -100,12 +105,30 @@ class Tally:
         """Return what the limits look at; `now` is the clock [s since 1970, UTC]."""
         return Progress(self.evaluations, self.elapsed, now, self.last_duration, self.hypervolumes)
 
-    def _count(self, generation: Judged) -> None:
+    def _count(self, generation: Judged) -> FloatArray:
+        """Count a generation and return its feasible points, (n, n_objectives)."""
         feasible = generation.violation == 0.0
         self.evaluations += len(feasible)
         self.feasible += int(feasible.sum())
         codes = (Outcome(int(code)) for code in generation.design_outcomes)
         self.failures.update(code for code in codes if code is not Outcome.CONVERGED)
-        candidates = np.vstack([self._front, generation.search_objectives[feasible]])
-        self._front = np.unique(candidates[non_dominated(candidates)], axis=0)
-        self.last = generation
+        points: FloatArray = generation.search_objectives[feasible]
+        return points
+
+    def _beaten(self, point: FloatArray) -> bool:
+        """Whether the front holds a point that is as good in every objective."""
+        return bool(np.any(np.all(self._front <= point, axis=1)))
+
+    def _gain(self, point: FloatArray) -> float:
+        """Return the hypervolume that a point dominates and the front does not."""
+        if self._beaten(point):
+            return 0.0
+        shared = np.maximum(self._front, point)
+        whole = hypervolume(point[None], self._reference)
+        return max(0.0, whole - hypervolume(shared, self._reference))
+
+    def _enter(self, point: FloatArray) -> None:
+        """Let a point into the front in the place of those that it beats."""
+        if not self._beaten(point):
+            kept = self._front[~np.all(self._front >= point, axis=1)]
+            self._front = np.vstack([kept, point])
