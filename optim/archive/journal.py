@@ -41,6 +41,7 @@ from optim.archive.journal_file import (
     put_generation,
     put_seal,
     put_state,
+    remove_database,
     write_new_journal,
 )
 from optim.archive.records import GenerationRecord, RunHeader
@@ -66,7 +67,6 @@ class Journal(JournalView):
         self._claim = claim
         self._closed = False
         with self._read() as db:
-            db.execute("PRAGMA journal_mode = WAL")
             db.execute("PRAGMA synchronous = FULL")
         items = self.header_items()
         with self._read():
@@ -207,10 +207,6 @@ class Journal(JournalView):
         if self._closed:
             return
         self._closed = True
-        # One plain file, readable from a read-only medium; a reader at work may prevent it.
-        with contextlib.suppress(sqlite3.OperationalError):
-            self._db.execute("PRAGMA busy_timeout = 0")
-            self._db.execute("PRAGMA journal_mode = DELETE")
         self._db.close()
         self._claim.release()
 
@@ -218,8 +214,7 @@ class Journal(JournalView):
         """Close the journal and delete it: RUN.h5 has been verified to hold everything."""
         self._closed = True
         self._db.close()
-        for suffix in ("", "-wal", "-shm"):
-            self.path.with_name(self.path.name + suffix).unlink(missing_ok=True)
+        remove_database(self.path)
         fsync_folder(self.path.parent)
         self._claim.release()
 

@@ -194,6 +194,11 @@ class JournalView:
                 f"{self.path}: the journal is damaged (its generations do not match its seal)."
             )
 
+    def stored_bytes(self) -> int:
+        """Return the size of the journal with its write-ahead file [bytes]."""
+        waiting = self.path.with_name(self.path.name + "-wal")
+        return self.path.stat().st_size + (waiting.stat().st_size if waiting.exists() else 0)
+
     def verify(self) -> Seal:
         """Read everything and compare it with the digests, the chain and the seal."""
         for _ in self.each_generation():
@@ -348,7 +353,7 @@ def write_new_journal(
     """
     path = journal_path(run)
     temporary = path.with_name(path.name + ".tmp")
-    temporary.unlink(missing_ok=True)
+    remove_database(temporary)
     db = sqlite3.connect(temporary, isolation_level=None)
     try:
         db.execute("PRAGMA synchronous = FULL")
@@ -361,6 +366,9 @@ def write_new_journal(
         put_state(db, state or {STATE_JSON.path: text_array("null")})
         put_seal(db, _put_generations(db, items_digest(header), generations))
         db.execute("COMMIT")
+        # Here and never again: a writer killed in a change of mode would leave a file that a
+        # read-only connection may not open.
+        db.execute("PRAGMA journal_mode = WAL")
     finally:
         db.close()
     temporary.replace(path)
@@ -410,6 +418,12 @@ def _rows(table: str, items: Items) -> list[tuple[str, str, str, str, bytes]]:
         )
         for path, array in items.items()
     ]
+
+
+def remove_database(path: Path) -> None:
+    """Remove a database with what SQLite may have left beside it."""
+    for suffix in ("", "-journal", "-wal", "-shm"):
+        path.with_name(path.name + suffix).unlink(missing_ok=True)
 
 
 def fsync_folder(folder: Path) -> None:

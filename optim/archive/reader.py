@@ -304,6 +304,8 @@ def open_run(path: Path) -> Run:
         If it has a newer format.
     ArchiveDamagedError
         If it is damaged or no archive; what can still be read is said.
+    StoppedEarlyError
+        If a journal is read and the folder for temporary files has no room for its snapshot.
     """
     run = path.with_name(path.name.removesuffix(_JOURNAL))
     for _ in range(_OPENING_TRIES):

@@ -7,7 +7,7 @@ file or the new one, whole. A few generations are in memory at a time, however l
 from __future__ import annotations
 
 import os
-import shutil
+import sys
 from pathlib import Path
 from typing import Any
 
@@ -92,7 +92,6 @@ def write_archive(view: JournalView, run: Path) -> None:
         If the journal is damaged, or what was written does not read back the same.
     """
     temporary = run.with_name(run.name + ".tmp")
-    _check_room(view, run)
     try:
         expected = derive(view, temporary, lasting=True)
         _verify(temporary, expected)
@@ -108,15 +107,20 @@ def write_archive(view: JournalView, run: Path) -> None:
         temporary.unlink(missing_ok=True)
 
 
-def _check_room(view: JournalView, run: Path) -> None:
-    # HDF5 that meets a full disk may bring the process down at its exit, so it is asked before.
-    needed = view.path.stat().st_size + SPARE_BYTES
-    free = shutil.disk_usage(run.parent).free
-    if free < needed:
+def _check_room(view: JournalView, path: Path) -> None:
+    """Stop unless the disk, and any quota, has room for a file as large as the journal."""
+    # HDF5 that meets a full disk brings the whole process down when it ends, so it must not.
+    if sys.platform != "linux":
+        return
+    needed = view.stored_bytes() + SPARE_BYTES
+    try:
+        with path.open("wb") as probe:
+            os.posix_fallocate(probe.fileno(), 0, needed)
+    except OSError as error:
         raise StoppedEarlyError(
-            f"{run}: the disk has {free // 1024} kB free and up to {needed // 1024} kB are "
-            "needed; the journal holds everything, make room and resume."
-        )
+            f"{path}: needs room for {needed // 1024} kB ({error.strerror}); the journal holds "
+            "everything, make room and try again."
+        ) from error
 
 
 def _verify(path: Path, expected: dict[str, str]) -> None:
@@ -142,7 +146,15 @@ def derive(view: JournalView, path: Path, *, lasting: bool) -> dict[str, str]:
     -------
     dict
         The digest of every dataset by its path.
+
+    Raises
+    ------
+    StoppedEarlyError
+        If there is no room for it on the disk.
+    ArchiveDamagedError
+        If the journal is damaged.
     """
+    _check_room(view, path)
     with (
         view.at_one_moment(),
         h5py.File(path, "w", libver=LIBRARY_VERSIONS, rdcc_nbytes=MOST_CHUNK_BYTES) as file,

@@ -15,7 +15,7 @@ from optim.archive.reopen import reopen
 from optim.archive.writer import finish, stop
 from optim.errors import ArchiveDamagedError, ArchiveVersionError, InputError
 
-FLIPS = 120
+FLIPS = 100
 
 
 @pytest.fixture(scope="module")

@@ -61,7 +61,7 @@ def test_the_header_comes_back(run):
         assert opened.header.study_text == expected.study_text
 
 
-@settings(max_examples=25, deadline=None)
+@settings(max_examples=12, deadline=None)
 @given(names=NAMES, text=st.text(st.characters(codec="utf-8", exclude_characters="\x00")))
 def test_any_text_comes_back(names, text):
     with tempfile.TemporaryDirectory() as folder:
@@ -78,7 +78,7 @@ def test_any_text_comes_back(names, text):
             assert opened.header.study_text == text
 
 
-@settings(max_examples=25, deadline=None)
+@settings(max_examples=12, deadline=None)
 @given(
     quantities=arrays.arrays(np.float64, (3, 2, 3), elements=MAYBE_ABSENT),
     state=STATE_ARRAYS,
