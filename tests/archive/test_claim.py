@@ -89,6 +89,23 @@ def test_a_reader_that_looks_does_not_turn_a_writer_away(run, monkeypatch):
     claims[0].release()
 
 
+def test_a_claim_on_a_file_that_has_just_gone_is_taken_anew(run, monkeypatch):
+    """The holder lets go between another's opening of the file and its locking."""
+    first = Claim(run)
+    real = os.open
+
+    def open_then_release(*arguments):
+        descriptor = real(*arguments)
+        first.release()
+        return descriptor
+
+    monkeypatch.setattr(os, "open", open_then_release)
+    second = Claim(run)
+    monkeypatch.setattr(os, "open", real)
+    assert holder(run) == second.writer
+    second.release()
+
+
 def test_a_failed_opening_gives_the_claim_back(run):
     journal_path(run).write_bytes(b"no journal")
     for _ in range(2):

@@ -9,6 +9,7 @@ import pytest
 from archive_sample import make_header, make_record, write_journal
 
 from optim.archive.hdf5_file import DIGEST, manifest_digest
+from optim.archive.journal import Journal
 from optim.archive.journal_file import journal_path
 from optim.archive.reader import open_finished, open_run
 from optim.archive.reopen import reopen
@@ -188,6 +189,22 @@ def test_rows_lost_moved_or_changed_are_found(run, change):
     for use in (open_run, lambda run: reopen(run, {})):
         with pytest.raises(ArchiveDamagedError):
             use(run)
+
+
+def test_a_generation_of_another_run_is_found(run, tmp_path):
+    """Sound in itself and in its place; only the chain knows that it is not this run's."""
+    write_journal(run, 5)
+    other = tmp_path / "other.h5"
+    with Journal.create(other, make_header()) as journal:
+        for generation in range(5):
+            journal.append(make_record(generation, hypervolume=0.25))
+    with contextlib.closing(sqlite3.connect(journal_path(run))) as db:
+        db.execute("ATTACH ? AS other", (str(journal_path(other)),))
+        db.execute("DELETE FROM block WHERE generation = 2")
+        db.execute("INSERT INTO block SELECT * FROM other.block WHERE generation = 2")
+        db.commit()
+    with pytest.raises(ArchiveDamagedError, match="its generations do not match its seal"):
+        open_run(run)
 
 
 def test_a_dataset_lost_is_found(run, whole):
