@@ -284,3 +284,13 @@ def test_reading_a_study_into_a_problem_waits_for_no_heavy_library():
     )
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
     assert done.stdout.strip() == "[]"
+
+
+def test_a_study_without_limits_still_tells_a_search_what_failed(make_problem, study_text):
+    """No constraint: one column is left, how incomplete a design is."""
+    problem = make_problem(study_text[: study_text.index("constraints:")])
+    found = problem.evaluate(problem.baseline_design)
+    assert problem.n_search_constraints == 1
+    assert found.search_constraints.tolist() == [0.0]
+    assert found.margins.shape == (0,)
+    assert found.feasible
