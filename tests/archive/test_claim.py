@@ -116,9 +116,9 @@ def test_a_failed_opening_gives_the_claim_back(run):
 
 @pytest.mark.parametrize(
     ("place", "kind"),
-    [("/home/a/run.h5", "nfs4"), ("/homes/run.h5", None), ("/tmp/run.h5", None)],  # noqa: S108
+    [("/home/a/run.h5", "nfs4"), ("/homes/run.h5", None), ("/data/run.h5", None)],
 )
 def test_a_network_file_system_is_recognised(monkeypatch, place, kind):
-    mounts = ["none / ext4 rw 0 0", "server:/home /home nfs4 rw 0 0", "none /tmp tmpfs rw 0 0"]
+    mounts = ["none / ext4 rw 0 0", "server:/home /home nfs4 rw 0 0", "none /data tmpfs rw 0 0"]
     monkeypatch.setattr("optim.archive.claim._mounts", lambda: mounts)
     assert network_file_system(Path(place)) == kind
