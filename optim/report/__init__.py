@@ -1,1 +1,10 @@
-"""Room report."""
+"""An archive, or flows asked for by hand -> what the designer sees: documents, figures, files.
+
+``front.py`` has the non-dominated designs of a run, ``rejudged.py`` the same run by the limits of
+another study; ``analysis.py`` flies sections that are asked for by hand; ``preview.py`` says what a
+study comes to before it is run; ``export.py`` writes a section as built; ``figures.py`` and
+``front_figure.py`` draw. A document is plain data with the field names of the command's JSON:
+angles in degrees, lengths in chords, not-a-number where something is absent.
+
+Import the modules by name: this door loads nothing.
+"""

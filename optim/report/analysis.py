@@ -1,0 +1,165 @@
+"""Sections flown because somebody asks, not because a search does.
+
+In: sections and what is asked of them. Out: one `Analysed` a section and Reynolds number, with the
+document of ``analyse --json``.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, replace
+from typing import Protocol
+
+from optim.aerodynamics.operating_point import OperatingPoint, SectionFlow
+from optim.arrays import FloatArray
+from optim.geometry.section import Section
+from optim.geometry.spacing import panel_nodes
+from optim.report.fields import Document, point_fields, section_fields, surface_fields
+from optim.report.grid import grid_fields, panel_counts
+
+
+class Evaluator(Protocol):
+    """What is asked of the evaluator of one section."""
+
+    def flows(self, points: Sequence[OperatingPoint]) -> Sequence[SectionFlow]:
+        """Return the flows in order, each started from earlier ones of the same list."""
+
+    def inviscid(
+        self, *, alpha: float | None = None, cl: float | None = None, mach: float = 0.0
+    ) -> SectionFlow:
+        """Return the flow without friction."""
+
+
+MakeEvaluator = Callable[[FloatArray], Evaluator]
+
+
+@dataclass(frozen=True)
+class Asked:
+    """What is asked of a section.
+
+    Attributes
+    ----------
+    points : tuple of OperatingPoint
+        At one Reynolds number, in the order of the answers; it is replaced by each of `reynolds`.
+    reynolds : tuple of float
+        Reynolds numbers [-]; one, of no account, if inviscid.
+    panels : int
+        Panels around the section.
+    swept : bool
+        Whether the points are a sweep of the angle, so that lift slope and the like are derived.
+    inviscid : bool
+        Without a boundary layer.
+    check_grid : bool
+        On half and double the panels, too.
+    """
+
+    points: tuple[OperatingPoint, ...]
+    reynolds: tuple[float, ...]
+    panels: int
+    swept: bool = False
+    inviscid: bool = False
+    check_grid: bool = False
+
+
+@dataclass(frozen=True)
+class Analysed:
+    """One section at one Reynolds number.
+
+    Attributes
+    ----------
+    section : Section
+        What was flown.
+    flows : tuple of SectionFlow
+        In the order asked.
+    derived : dict or None
+        What a sweep says as a whole.
+    grid : list of dict or None
+        The comparison with half and double the panels, one entry a point.
+    """
+
+    section: Section
+    flows: tuple[SectionFlow, ...]
+    derived: Document | None = None
+    grid: list[Document] | None = None
+
+    def document(self, *, surface: bool = False) -> Document:
+        """Return the entry of ``analyse --json``.
+
+        Parameters
+        ----------
+        surface : bool
+            With the distributions along the surface.
+        """
+        points = [point_fields(flow) for flow in self.flows]
+        if surface:
+            for point, flow in zip(points, self.flows, strict=True):
+                point["surface"] = None if flow.surface is None else surface_fields(flow.surface)
+        entry: Document = {"section": section_fields(self.section), "points": points}
+        if self.derived is not None:
+            entry["derived"] = self.derived
+        if self.grid is not None:
+            entry["grid"] = self.grid
+        return entry
+
+
+def analyse(section: Section, asked: Asked, make: MakeEvaluator) -> list[Analysed]:
+    """Return the flows about a section, one entry a Reynolds number.
+
+    Parameters
+    ----------
+    section : Section
+        A contour without faults.
+    asked : Asked
+        What is asked.
+    make : callable
+        Makes the evaluator of a section from its nodes.
+    """
+    counts = (asked.panels, *(panel_counts(asked.panels) if asked.check_grid else ()))
+    evaluators = [make(panel_nodes(section, panels)) for panels in counts]
+    answers = []
+    for reynolds in asked.reynolds:
+        points = [replace(point, reynolds=reynolds) for point in asked.points]
+        flows, *others = [_flown(one, points, asked) for one in evaluators]
+        grid = _grid(flows, *others) if others else None
+        answers.append(Analysed(section, flows, None, grid))
+    return answers
+
+
+def _flown(
+    evaluator: Evaluator, points: list[OperatingPoint], asked: Asked
+) -> tuple[SectionFlow, ...]:
+    if asked.inviscid:
+        return tuple(evaluator.inviscid(alpha=p.alpha, cl=p.cl, mach=p.mach) for p in points)
+    return tuple(evaluator.flows(points))
+
+
+def _grid(
+    flows: Sequence[SectionFlow], half: Sequence[SectionFlow], double: Sequence[SectionFlow]
+) -> list[Document]:
+    return [
+        grid_fields(point_fields(coarse), point_fields(one), point_fields(fine))
+        for coarse, one, fine in zip(half, flows, double, strict=True)
+    ]
+
+
+def sweep_angles(first: float, last: float, step: float) -> list[float]:
+    """Return the angles of a sweep, both ends included.
+
+    Parameters
+    ----------
+    first, last, step : float
+        In one unit; the last step is shorter where the range is no multiple of it.
+
+    Examples
+    --------
+    >>> sweep_angles(-1.0, 1.0, 0.5), sweep_angles(4.0, 0.0, -3.0)
+    ([-1.0, -0.5, 0.0, 0.5, 1.0], [4.0, 1.0, 0.0])
+    """
+    whole = math.floor((last - first) / step * (1.0 + 1e-12) + 1e-9)
+    angles = [first + k * step for k in range(whole + 1)]
+    if abs(angles[-1] - last) > 1e-9 * max(1.0, abs(last)):
+        angles.append(last)
+    else:
+        angles[-1] = last
+    return angles

@@ -1,0 +1,106 @@
+"""What only a process of its own shows: streams, exit codes, traces, and what is imported."""
+
+import json
+import subprocess
+import sys
+
+import pytest
+
+HEAVY = ("numba", "pymoo")
+
+WHAT_IS_LOADED = """
+import sys
+from optim.cli.app import run
+code = run(sys.argv[1:])
+sys.stderr.write(",".join(sorted({name.partition(".")[0] for name in sys.modules})))
+sys.exit(code)
+"""
+
+
+def loaded(process, *words):
+    """Return the libraries that a command has loaded when it ends."""
+    done = process(*words, program=("-c", WHAT_IS_LOADED))
+    assert done.returncode == 0, done.stderr
+    return set(done.stderr.splitlines()[-1].split(","))
+
+
+def test_import_optim_loads_nothing_heavy(process):
+    done = process(program=("-c", "import sys, optim; print(*sys.modules, sep=chr(10))"))
+    names = {name.partition(".")[0] for name in done.stdout.split()}
+    assert "optim" in names
+    assert names.isdisjoint({*HEAVY, "numpy", "scipy", "h5py", "pydantic", "matplotlib", "typer"})
+
+
+def test_looking_at_a_run_waits_for_no_compiler_and_no_search(process, run_file, tmp_path):
+    for words in (
+        ("front", run_file),
+        ("front", run_file, "--json"),
+        ("status", run_file, "--json"),
+        ("export", f"{run_file}#3", "--output", tmp_path / "section.csv"),
+        ("fit", "naca:2412", "--shape", "cst"),
+        ("template",),
+        ("schema",),
+    ):
+        assert loaded(process, *words).isdisjoint(HEAVY), words
+
+
+@pytest.mark.parametrize("words", [("--help",), ("check", "--help"), ("run", "--help")])
+def test_help_loads_no_library_of_numbers(process, words):
+    heavy = {*HEAVY, "numpy", "scipy", "h5py", "yaml", "pint", "rich"}  # typer has pydantic
+    assert loaded(process, *words).isdisjoint(heavy)
+
+
+def test_python_m_optim_is_the_command(process):
+    done = process("--help")
+    assert done.returncode == 0
+    for name in ("template", "check", "run", "resume", "status", "front", "analyse", "fit"):
+        assert name in done.stdout
+
+
+def test_no_words_is_the_help(process):
+    done = process()
+    assert done.returncode == 0
+    assert "sectionwright" in done.stdout
+
+
+BUG = """
+import sys
+import optim.cli.app as app
+def broken(*_):
+    raise ZeroDivisionError("planted")
+sys.modules["optim.study.template"] = type(sys)("template")
+sys.modules["optim.study.template"].template_text = broken
+app.main()
+"""
+
+
+def test_bug_is_one_line_and_exit_1(process):
+    done = process("template", program=("-c", BUG))
+    (line,) = done.stderr.splitlines()
+    assert done.returncode == 1
+    assert "this is a bug" in line
+    assert "ZeroDivisionError: planted" in line
+    assert "--debug" in line
+
+
+def test_debug_shows_the_trace(process):
+    for words in (("--debug", "template"), ("template", "--debug")):
+        done = process(*words, program=("-c", BUG))
+        assert done.returncode == 1
+        assert "Traceback" in done.stderr
+        assert 'raise ZeroDivisionError("planted")' not in done.stderr.splitlines()[0]
+
+
+def test_reader_that_goes_away_is_no_bug(run_file):
+    command = [sys.executable, "-m", "optim", "front", str(run_file), "--json"]
+    with subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.PIPE) as writer:
+        writer.stdout.close()
+        said = writer.stderr.read()
+    assert writer.returncode == 141
+    assert said == b""
+
+
+def test_json_is_alone_on_standard_output(process, run_file):
+    done = process("front", run_file, "--json", "--plot", "front.png")
+    json.loads(done.stdout)
+    assert done.stderr == "front.png is drawn.\n"
