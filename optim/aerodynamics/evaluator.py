@@ -1,0 +1,327 @@
+"""The evaluator of one section: its outer flow once, then any number of conditions.
+
+A flow is a function of the section's nodes and of the conditions asked for alone. Starts come from
+nothing but the section itself, in a fixed order: from the flow before it in the same list, if that
+is near; from a march on the inviscid flow; and last by continuation from an easier angle, in steps
+that are halved where they fail. A budget of iterations ends each attempt, never a clock.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+
+import numpy as np
+from numpy.typing import NDArray
+
+from optim.aerodynamics.compressibility import (
+    compressed_pressure,
+    critical_pressure,
+    tsien_parameter,
+)
+from optim.aerodynamics.coupling import newton
+from optim.aerodynamics.forces import lift_force
+from optim.aerodynamics.layout import NEVER
+from optim.aerodynamics.operating_point import (
+    LEAST_LIFT_FOR_CENTRE_OF_PRESSURE,
+    QUARTER_CHORD,
+    OperatingPoint,
+    SectionFlow,
+    Surface,
+)
+from optim.aerodynamics.outer import Outer
+from optim.aerodynamics.results import build_flow
+from optim.aerodynamics.starter import start
+from optim.arrays import FloatArray, frozen
+from optim.outcomes import Outcome
+
+TOLERANCE = 1e-8
+"""Residual of the logarithmic equations at which a flow is solved [-]."""
+
+BUDGET = 40
+"""Iterations of one attempt; a converging one takes 5 to 20."""
+
+NEAR_ANGLE = math.radians(4.0)
+"""A flow is started from the one before it if the angles lie this near [rad]."""
+
+NEAR_REYNOLDS = 3.0
+"""... and the Reynolds numbers within this factor [-]."""
+
+FIRST_STEP = math.radians(2.0)
+LEAST_STEP = math.radians(0.2)
+"""First and least step of a continuation in the angle of attack [rad]."""
+
+CONTINUATION_SOLVES = 40
+"""Solves that one continuation may take."""
+
+EASY_LIFT = 0.3
+"""Lift coefficient from which a continuation sets out [-]; attached on any usual section."""
+
+VISCOUS_SLOPE = 0.92
+"""Lift of the coupled flow over that of the inviscid one, for a first angle [-]."""
+
+REYNOLDS_RANGE = (1e4, 1e9)
+MACH_LIMIT = 0.8
+N_RANGE = (0.5, 20.0)
+"""Conditions that are looked at at all; how far they are to be trusted is another matter."""
+
+
+@dataclass(slots=True)
+class State:
+    """A solution of the coupled equations (layout.py explains the arrays)."""
+
+    X: FloatArray
+    M: FloatArray
+    q: FloatArray
+    js: int
+    alpha: float
+    turn: NDArray[np.int64]
+    frac: FloatArray
+    why: NDArray[np.int64]
+    reynolds: float
+
+
+@dataclass(frozen=True, slots=True)
+class Attempt:
+    """How one attempt ended: the state if it converged, the iterations and the residual."""
+
+    state: State | None
+    iterations: int
+    residual: float
+
+
+class SectionEvaluator:
+    """Solve the flow about one section at any number of conditions.
+
+    Parameters
+    ----------
+    nodes : (panels + 1, 2) array
+        Contour from the upper edge over the nose to the lower edge [chords].
+
+    Attributes
+    ----------
+    solves : int
+        Coupled solutions attempted so far.
+    """
+
+    def __init__(self, nodes: FloatArray) -> None:
+        self.outer = Outer(nodes)
+        self.solves = 0
+        self._rows = np.zeros((self.outer.total, self.outer.total + 3))
+        self._rows[:, : self.outer.total] = self.outer.influence
+
+    @property
+    def panels(self) -> int:
+        """Number of panels on the contour."""
+        return self.outer.n - 1
+
+    def flow(self, point: OperatingPoint) -> SectionFlow:
+        """Return the flow at one condition, started from nothing."""
+        return self.flows([point])[0]
+
+    def flows(self, points: Sequence[OperatingPoint]) -> list[SectionFlow]:
+        """Return the flows in the order given, each started from the one before it if near.
+
+        Parameters
+        ----------
+        points : sequence of OperatingPoint
+            Conditions; their order is part of the answer, to within the tolerance.
+        """
+        answers = []
+        near: State | None = None
+        for point in points:
+            flow, state = self.solve(point, near)
+            near = state if state is not None else near
+            answers.append(flow)
+        return answers
+
+    def solve(
+        self, point: OperatingPoint, near: State | None = None
+    ) -> tuple[SectionFlow, State | None]:
+        """Return the flow at a condition and its state, None if it did not converge."""
+        if not in_range(point):
+            return SectionFlow(point, Outcome.OUT_OF_RANGE, self.panels), None
+        alpha = point.alpha
+        if alpha is None:
+            alpha = self.outer.angle_of_lift(point.cl / VISCOUS_SLOPE)  # type: ignore[operator]
+        if math.isnan(alpha):
+            return SectionFlow(point, Outcome.OUT_OF_RANGE, self.panels), None
+        spent = 0
+        attempt = Attempt(None, 0, math.inf)
+        if near is not None and _is_near(near, alpha, point.reynolds):
+            attempt = self._attempt(point, alpha, near)
+            spent += attempt.iterations
+        if attempt.state is None:
+            attempt = self._attempt(point, alpha, None)
+            spent += attempt.iterations
+        if attempt.state is None:
+            attempt = self._continue(point, alpha)
+            spent += attempt.iterations
+        if attempt.state is None:
+            outcome = Outcome.NOT_CONVERGED
+            return (
+                SectionFlow(
+                    point, outcome, self.panels, iterations=spent, residual=attempt.residual
+                ),
+                None,
+            )
+        return build_flow(self.outer, point, attempt.state, spent, attempt.residual), attempt.state
+
+    def _attempt(self, point: OperatingPoint, alpha: float, near: State | None) -> Attempt:
+        """March a first state and iterate."""
+        self.solves += 1
+        o = self.outer
+        total = o.total
+        X = np.zeros((total, 5))
+        M = np.zeros(total) if near is None else near.M.copy()
+        q = np.zeros(total)
+        turn = np.array([NEVER, NEVER])
+        frac = np.zeros(2)
+        why = np.zeros(2, dtype=np.int64)
+        trips = o.trips(point.trip_upper, point.trip_lower)
+        k = tsien_parameter(point.mach)
+        js, _ = start(
+            X, M, q, o.stream, o.influence, o.s, o.sw, alpha, o.n, o.gap, trips, turn, frac,
+            k, point.n_factor, point.reynolds, point.mach**2, near is not None,
+        )  # fmt: skip
+        if js < 0:
+            return Attempt(None, 0, math.inf)
+        wanted = math.nan if point.cl is None else point.cl
+        done, js, alpha, iterations, residual = newton(
+            o.x, o.y, o.s, o.sw, o.stream, o.influence, self._rows, o.gap,
+            X, M, q, np.ones(total), js, alpha, turn, frac, why, trips, wanted,
+            point.n_factor, point.reynolds, point.mach, k, BUDGET, TOLERANCE,
+            np.zeros((BUDGET + 1, 8)),
+        )  # fmt: skip
+        state = State(X, M, q, js, alpha, turn, frac, why, point.reynolds) if done else None
+        return Attempt(state, iterations, residual)
+
+    def _continue(self, point: OperatingPoint, alpha: float) -> Attempt:
+        """Walk from an easier angle to the one wanted, halving the steps that fail.
+
+        Where the lift is given, the walk goes to the first angle estimated for it, and the lift is
+        then met from there.
+        """
+        here = self.outer.angle_of_lift(EASY_LIFT)
+        free = replace(point, alpha=here, cl=None)
+        attempt = self._attempt(free, here, None)
+        spent = attempt.iterations
+        step = math.copysign(FIRST_STEP, alpha - here)
+        for _ in range(CONTINUATION_SOLVES):
+            if attempt.state is None or here == alpha:
+                break
+            there = alpha if abs(alpha - here) <= abs(step) else here + step
+            trial = self._attempt(replace(point, alpha=there, cl=None), there, attempt.state)
+            spent += trial.iterations
+            if trial.state is not None:
+                attempt, here = trial, there
+                continue
+            step *= 0.5
+            if abs(step) < LEAST_STEP:
+                return Attempt(None, spent, trial.residual)
+        if attempt.state is None or here != alpha:
+            return Attempt(None, spent, attempt.residual)
+        if point.cl is not None:
+            attempt = self._attempt(point, here, attempt.state)
+            spent += attempt.iterations
+        return Attempt(attempt.state, spent, attempt.residual)
+
+    def inviscid(
+        self, *, alpha: float | None = None, cl: float | None = None, mach: float = 0.0
+    ) -> SectionFlow:
+        """Return the flow without layers; drag and layer fields are not-a-number.
+
+        Parameters
+        ----------
+        alpha, cl : float
+            Angle of attack [rad] or lift coefficient [-]; one of the two.
+        mach : float
+            Free-stream Mach number [-].
+        """
+        point = OperatingPoint(math.inf, alpha, cl, mach)
+        angle = self.outer.angle_of_lift(cl) if cl is not None else alpha
+        if angle is None or math.isnan(angle):
+            return SectionFlow(point, Outcome.OUT_OF_RANGE, self.panels)
+        angle = self._inviscid_angle(angle, cl, mach)
+        o = self.outer
+        q = math.cos(angle) * o.stream[: o.n, 0] + math.sin(angle) * o.stream[: o.n, 1]
+        cp = compressed_pressure(1.0 - q * q, mach)[0]
+        bare = SectionFlow(point, Outcome.CONVERGED, self.panels, alpha=angle)
+        if cp.min() <= critical_pressure(mach):
+            return replace(bare, outcome=Outcome.LOCAL_SONIC)
+        return inviscid_flow(o, bare, q, cp)
+
+    def _inviscid_angle(self, angle: float, cl: float | None, mach: float) -> float:
+        """Correct an angle so that the pressure forces have the lift wanted."""
+        if cl is None:
+            return angle
+        o = self.outer
+        for _ in range(20):
+            values = []
+            for trial in (angle, angle + 1e-4):
+                q = math.cos(trial) * o.stream[: o.n, 0] + math.sin(trial) * o.stream[: o.n, 1]
+                values.append(lift_force(o.x, o.y, q, trial, mach, np.empty(o.n))[0])
+            step = (cl - values[0]) * 1e-4 / (values[1] - values[0])
+            angle += step
+            if abs(step) < 1e-13:
+                break
+        return angle
+
+    def maximum_lift(self, point: OperatingPoint) -> SectionFlow:
+        """Return the flow at the peak of the lift over the angle of attack (sweep.py)."""
+        from optim.aerodynamics.sweep import maximum_lift  # noqa: PLC0415  (it walks this class)
+
+        return maximum_lift(self, point)
+
+
+def in_range(point: OperatingPoint) -> bool:
+    """Whether a condition lies where the method may be tried at all."""
+    return (
+        REYNOLDS_RANGE[0] <= point.reynolds <= REYNOLDS_RANGE[1]
+        and 0.0 <= point.mach < MACH_LIMIT
+        and N_RANGE[0] <= point.n_factor <= N_RANGE[1]
+        and point.trip_upper >= 0.0
+        and point.trip_lower >= 0.0
+    )
+
+
+def _is_near(state: State, alpha: float, reynolds: float) -> bool:
+    ratio = reynolds / state.reynolds
+    return (
+        abs(alpha - state.alpha) <= NEAR_ANGLE and 1.0 / NEAR_REYNOLDS <= ratio <= NEAR_REYNOLDS
+    )
+
+
+def inviscid_flow(
+    outer: Outer, bare: SectionFlow, q: FloatArray, cp: FloatArray
+) -> SectionFlow:
+    """Fill what an inviscid flow has: lift, moment, pressures and the stagnation point."""
+    mach = bare.point.mach
+    cl, _, cm, cn = lift_force(outer.x, outer.y, q, bare.alpha, mach, np.empty(outer.n))
+    js = int(np.flatnonzero((q[:-1] < 0.0) & (q[1:] >= 0.0))[0])
+    s0 = outer.s[js] - q[js] * (outer.s[js + 1] - outer.s[js]) / (q[js + 1] - q[js])
+    peak = int(np.argmin(cp))
+    order = np.concatenate([np.arange(js, -1, -1), np.arange(js + 1, outer.n)])
+    k = tsien_parameter(mach)
+    surface = Surface(
+        side=("upper",) * (js + 1) + ("lower",) * (outer.n - js - 1),
+        x=frozen(outer.x[order]),
+        y=frozen(outer.y[order]),
+        s=frozen(np.abs(outer.s - s0)[order]),
+        cp=frozen(cp[order]),
+        speed=frozen((np.abs(q) * (1.0 - k) / (1.0 - k * q * q))[order]),
+    )
+    return replace(
+        bare,
+        cl=float(cl),
+        cm_quarter=float(cm),
+        x_cp=math.nan
+        if abs(cl) < LEAST_LIFT_FOR_CENTRE_OF_PRESSURE
+        else float(QUARTER_CHORD - cm / cn),
+        stagnation_x=float(np.interp(s0, outer.s, outer.x)),
+        stagnation_side="upper" if s0 < outer.s_nose else "lower",
+        cp_min=float(cp[peak]),
+        cp_min_x=float(outer.x[peak]),
+        surface=surface,
+    )

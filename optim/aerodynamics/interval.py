@@ -1,0 +1,286 @@
+"""The equations of the layer between two stations.
+
+The box scheme in logarithms of thickness, speed and length: exact for power-law flows, so that few
+stations suffice at the nose, and for terms that are linear in length. An interval that holds
+transition is two intervals, laminar up to a place at which the state is interpolated and turbulent
+after it; where amplification reaches its critical value is part of the equations.
+
+Residuals are named by row, momentum, energy and third, and their slopes by column: t, d, l, s, xi
+of the upstream and of the downstream station (layer.py explains the letters).
+
+References
+----------
+Drela, M., Giles, M. B., AIAA J. 25(10), 1987 (equations; transition inside the interval).
+"""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+
+from optim.aerodynamics.kernels import njit
+from optim.aerodynamics.layer import (
+    ENERGY,
+    EXCHANGE,
+    FRICTION,
+    INERTIA,
+    LAMINAR,
+    SHAPE,
+    SLOPES,
+    TERMS,
+    THIRD,
+    TURBULENT,
+    laminar_station,
+    stress_at_equilibrium,
+    turbulent_station,
+)
+from optim.aerodynamics.turbulent import START_RATIO
+
+EQUATIONS = 3
+COLUMNS = 10
+"""Shape of an interval's slopes: t, d, l, s, xi upstream, then downstream."""
+
+RELAXATION = 20.0
+"""Length over which a turbulent layer's shape and stress relax, in momentum thicknesses [-]; from
+the lag equation, delta/(K sqrt(Ct)) is some 20 to 40 theta. It only weighs the two ends of an
+interval: the error of any value vanishes with the interval."""
+
+UP, DOWN = 0, 5
+"""First column of the upstream and of the downstream station."""
+
+XI = 4
+"""Column of the length within a station."""
+
+FREE, FORCED, HELD = 0, 1, 2
+"""Why an interval turns turbulent: amplification, a trip, or only for the moment."""
+
+
+@njit
+def length_weights(xi1, xi2):  # type: ignore[no-untyped-def]
+    """Return L = ln(xi2/xi1), h = L w and w with their slopes by L.
+
+    w = 1/L - 1/(exp(L) - 1) is the downstream weight that integrates a function linear in xi
+    exactly over d(ln xi); it is 1/2 where the interval is short beside its distance from the
+    stagnation point.
+    """
+    L = math.log(xi2 / xi1)
+    if L < 0.05:
+        L2 = L * L
+        w = 0.5 - L / 12.0 + L * L2 / 720.0
+        return L, L * w, 0.5 - L / 6.0 + L * L2 / 180.0, w, -1.0 / 12.0 + L2 / 240.0
+    e = math.exp(L) - 1.0
+    h = 1.0 - L / e
+    h_L = -1.0 / e + L * (e + 1.0) / (e * e)
+    w = h / L
+    return L, h, h_L, w, (h_L - w) / L
+
+
+@njit
+def relaxation_weight(x):  # type: ignore[no-untyped-def]
+    """Return the downstream weight 1/(1 - exp(-x)) - 1/x of an interval, and its slope by x.
+
+    Exact for a quantity that relaxes over the length interval/x; 1/2 where the interval is short
+    beside that length, 1 where the layer follows at once. The trapezoidal rule would overshoot
+    there, right after transition in a thin layer, below any shape that a layer can have.
+    """
+    if x < 0.05:
+        return 0.5 + x / 12.0 - x * x * x / 720.0, 1.0 / 12.0 - x * x / 240.0
+    if x > 40.0:
+        return 1.0 - 1.0 / x, 1.0 / (x * x)
+    e = math.exp(-x)
+    return 1.0 / (1.0 - e) - 1.0 / x, 1.0 / (x * x) - e / ((1.0 - e) * (1.0 - e))
+
+
+@njit
+def balance(row, flux, factor, x1, x2, a, b, W, R, J):  # type: ignore[no-untyped-def]
+    """Add -int flux dxi + int factor dl to one equation and its slopes; return its slope by w.
+
+    Parameters
+    ----------
+    row : int
+        Equation.
+    flux, factor : int
+        Rows of the station terms `a` (upstream) and `b` (downstream).
+    x1, x2 : (5,) array
+        The two stations.
+    W : tuple
+        L, h, h_L, w, w_L of `length_weights`, or the like for another weight w.
+    """
+    L, h, h_L, w, w_L = W
+    xi1 = x1[XI]
+    xi2 = x2[XI]
+    F1 = a[flux, 0]
+    F2 = b[flux, 0]
+    G1 = a[factor, 0]
+    G2 = b[factor, 0]
+    dl = x2[2] - x1[2]
+    rise = xi2 * F2 - xi1 * F1
+    G = G1 + w * (G2 - G1)
+    R[row] += -(L * xi1 * F1 + h * rise) + G * dl
+    for k in range(4):
+        J[row, UP + k] += -(L - h) * xi1 * a[flux, 1 + k] + (1.0 - w) * dl * a[factor, 1 + k]
+        J[row, DOWN + k] += -h * xi2 * b[flux, 1 + k] + w * dl * b[factor, 1 + k]
+    J[row, UP + 2] -= G
+    J[row, DOWN + 2] += G
+    by_L = -(xi1 * F1 + h_L * rise) + w_L * (G2 - G1) * dl
+    J[row, UP + XI] += -(L - h) * F1 - by_L / xi1
+    J[row, DOWN + XI] += -h * F2 + by_L / xi2
+    return -L * rise + (G2 - G1) * dl
+
+
+@njit
+def third_balance(w, x1, x2, a, b, R, J):  # type: ignore[no-untyped-def]
+    """Fill 2 (s2 - s1) - int A dxi with the downstream weight w; return its slope by w."""
+    step = x2[XI] - x1[XI]
+    mean = (1.0 - w) * a[THIRD, 0] + w * b[THIRD, 0]
+    R[2] = 2.0 * (x2[3] - x1[3]) - mean * step
+    for k in range(4):
+        J[2, UP + k] = -(1.0 - w) * step * a[THIRD, 1 + k]
+        J[2, DOWN + k] = -w * step * b[THIRD, 1 + k]
+    J[2, UP + 3] -= 2.0
+    J[2, DOWN + 3] += 2.0
+    J[2, UP + XI] = mean
+    J[2, DOWN + XI] = -mean
+    return -step * (b[THIRD, 0] - a[THIRD, 0])
+
+
+@njit
+def plain_interval(kind, x1, x2, a, b, R, J):  # type: ignore[no-untyped-def]
+    """Fill residuals and slopes of an interval of one kind of layer.
+
+    Parameters
+    ----------
+    kind : int
+        LAMINAR, TURBULENT or WAKE.
+    x1, x2 : (5,) array
+        t, d, l, s, xi of the two stations.
+    a, b : (6, 5) array
+        Their terms.
+    R, J : (3,), (3, 10) array
+        Filled.
+    """
+    W = length_weights(x1[XI], x2[XI])
+    J[:] = 0.0
+    R[0] = x2[0] - x1[0]
+    J[0, UP] = -1.0
+    J[0, DOWN] = 1.0
+    R[1] = b[SHAPE, 0] - a[SHAPE, 0]
+    for k in range(4):
+        J[1, UP + k] = -a[SHAPE, 1 + k]
+        J[1, DOWN + k] = b[SHAPE, 1 + k]
+    balance(0, FRICTION, INERTIA, x1, x2, a, b, W, R, J)
+    if kind == LAMINAR:
+        # amplification is marched on its own: it reaches over two intervals
+        balance(1, ENERGY, EXCHANGE, x1, x2, a, b, W, R, J)
+        R[2] = 0.0
+        return
+    step = x2[XI] - x1[XI]
+    x = step / (RELAXATION * math.exp(x1[0]))
+    w, w_x = relaxation_weight(x)
+    L = W[0]
+    by_w = balance(1, ENERGY, EXCHANGE, x1, x2, a, b, (L, L * w, w, w, 0.0), R, J)
+    by_w_third = third_balance(w, x1, x2, a, b, R, J)
+    for row in (1, 2):
+        change = (by_w if row == 1 else by_w_third) * w_x * x
+        J[row, UP] -= change
+        if step > 0.0:
+            J[row, UP + XI] -= change / step
+            J[row, DOWN + XI] += change / step
+
+
+@njit
+def between(x1, x2, f, out):  # type: ignore[no-untyped-def]
+    """Fill the state at the fraction f between two stations; s is left to the caller."""
+    for k in range(SLOPES):
+        out[k] = x1[k] + f * (x2[k] - x1[k])
+
+
+@njit
+def growth_rise(A1, A0, ratio):  # type: ignore[no-untyped-def]
+    """Return the change of growth over an interval, extrapolated, and its slopes by A1 and A0.
+
+    `ratio` is the interval's length over that of the one ahead of it, zero if there is none. The
+    growth does not fall below zero at the interval's end.
+    """
+    rise = ratio * (A1 - A0)
+    if rise < -A1:
+        return -A1, -1.0, 0.0
+    return rise, ratio, -ratio
+
+
+@njit
+def amplified(N, A1, rise, step, f):  # type: ignore[no-untyped-def]
+    """Return N at the fraction f of an interval: growth extrapolated from the stations upstream.
+
+    Second order (Adams-Bashforth), and blind to the state downstream, which is turbulent where
+    transition is: growth interpolated towards it would never reach the critical value.
+    """
+    return N + step * f * (A1 + 0.5 * f * rise)
+
+
+@njit
+def fraction_at(N, A1, rise, step, critical):  # type: ignore[no-untyped-def]
+    """Return the fraction of an interval at which N is critical; -1 if it is not within it."""
+    lack = (critical - N) / step
+    if lack <= 0.0:
+        return 0.0
+    square = A1 * A1 + 2.0 * rise * lack
+    if square < 0.0:
+        return -1.0
+    low = A1 + math.sqrt(square)
+    f = 2.0 * lack / low if low > 0.0 else 2.0
+    return f if f <= 1.0 else -1.0
+
+
+@njit
+def transition_interval(x1, x2, a, b, f, Re, M2, R, J, by_f):  # type: ignore[no-untyped-def]
+    """Fill residuals and slopes of an interval that turns turbulent at the fraction f.
+
+    Parameters
+    ----------
+    x1, x2 : (5,) array
+        Stations; x2 holds ln sqrt(Ct) in place 3.
+    a, b : (6, 5) array
+        Laminar terms of x1, turbulent terms of x2.
+    f : float
+        Where, as a fraction of the interval.
+    by_f : (3,) array
+        Filled with the slopes of the residuals by f.
+    """
+    middle = np.empty(SLOPES)
+    between(x1, x2, f, middle)
+    lam = np.empty((TERMS, SLOPES))
+    tur = np.empty((TERMS, SLOPES))
+    laminar_station(middle[0], middle[1], middle[2], Re, M2, False, lam)
+    start, by_t, by_d, by_l = stress_at_equilibrium(middle[0], middle[1], middle[2], Re, M2)
+    middle[3] = start + 0.5 * math.log(START_RATIO)
+    turbulent_station(middle[0], middle[1], middle[2], middle[3], Re, M2, False, tur)
+    Ra = np.zeros(EQUATIONS)
+    Ja = np.zeros((EQUATIONS, COLUMNS))
+    Jb = np.zeros((EQUATIONS, COLUMNS))
+    plain_interval(LAMINAR, x1, middle, a, lam, Ra, Ja)
+    plain_interval(TURBULENT, middle, x2, tur, b, R, Jb)
+    J[:] = 0.0
+    for row in range(EQUATIONS):
+        if row < 2:
+            R[row] += Ra[row]
+        by_f[row] = 0.0
+        for k in range(SLOPES):
+            if k == 3:
+                continue
+            middle_k = Jb[row, UP + k]
+            if k == 0:
+                middle_k += Jb[row, UP + 3] * by_t
+            elif k == 1:
+                middle_k += Jb[row, UP + 3] * by_d
+            elif k == 2:
+                middle_k += Jb[row, UP + 3] * by_l
+            if row < 2:
+                middle_k += Ja[row, DOWN + k]
+                J[row, UP + k] += Ja[row, UP + k]
+            J[row, UP + k] += (1.0 - f) * middle_k
+            J[row, DOWN + k] += f * middle_k
+            by_f[row] += middle_k * (x2[k] - x1[k])
+        for k in range(SLOPES):
+            J[row, DOWN + k] += Jb[row, DOWN + k]

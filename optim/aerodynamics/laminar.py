@@ -1,0 +1,115 @@
+"""Laminar two-equation closure: smooth fits to the Falkner-Skan family.
+
+One-parameter relations between the shape factor H = delta*/theta and the energy shape factor H*,
+the friction l = Re_theta cf/2 and the dissipation d = 2 CD Re_theta/H*, fitted to numerical
+solutions of f''' + f f'' + beta (1 - f'^2) = 0 on the attached and the separated branch.
+
+Range 2.1 <= H <= 20; outside it the relations go on with the value and slope of the end, which is
+only a path for the iteration: a solution that ends there is not accepted.
+
+References
+----------
+Falkner, V. M., Skan, S. W., ARC R&M 1314, 1930. Hartree, D. R., Proc. Cambridge Phil. Soc. 33,
+1937. Stewartson, K., Proc. Cambridge Phil. Soc. 50, 1954 (separated branch). The coefficients are
+this project's own least-squares fits; tests/aerodynamics solves the equation anew against them.
+"""
+
+from __future__ import annotations
+
+import numpy as np
+
+from optim.aerodynamics.kernels import njit
+
+LEAST_H = 2.1
+"""Least shape factor of the fits [-]."""
+
+GREATEST_H = 20.0
+"""Greatest shape factor of the fits [-]."""
+
+STAGNATION_H = 2.216229
+"""Shape factor of Hiemenz's stagnation flow (beta = 1), from the numerical solution [-]."""
+
+STAGNATION_THETA = 0.292344
+"""theta sqrt(ue'/nu) of Hiemenz's stagnation flow, from the numerical solution [-]."""
+
+ENERGY_FIT = np.array(
+    [0.043785075, 1.3906924, -1.0746607, 5.8359145, -10.885952, 9.6955846, -3.351044]
+)
+"""H*/(H - 1) in ascending powers of 1/(H - 1); within 0.06 % of Falkner-Skan."""
+
+FRICTION_FIT = np.array(
+    [
+        0.0096902675,
+        -1.1008858,
+        4.2684952,
+        -0.69668391,
+        -14.386294,
+        28.486354,
+        -23.408982,
+        7.322458,
+    ]
+)
+"""l = Re_theta cf/2 in ascending powers of 1/(H - 1); within 5e-4 of Falkner-Skan."""
+
+DISSIPATION_FIT = np.array(
+    [
+        -0.025993142,
+        2.3308361,
+        -8.1912688,
+        9.4926975,
+        9.7826938,
+        -36.175308,
+        34.443952,
+        -11.384255,
+    ]
+)
+"""d = 2 CD Re_theta/H* in ascending powers of 1/(H - 1); within 0.19 % of Falkner-Skan."""
+
+
+@njit
+def polynomial(coefficients, t):  # type: ignore[no-untyped-def]  # compiled: typed by its calls
+    """Return a polynomial in ascending powers and its derivative, by Horner's rule."""
+    value = 0.0
+    slope = 0.0
+    for k in range(len(coefficients) - 1, -1, -1):
+        slope = slope * t + value
+        value = value * t + coefficients[k]
+    return value, slope
+
+
+@njit
+def laminar_closure(H):  # type: ignore[no-untyped-def]
+    """Return the laminar relations and their slopes.
+
+    Parameters
+    ----------
+    H : float
+        Shape factor delta*/theta [-].
+
+    Returns
+    -------
+    energy, energy_H : float
+        H* and dH*/dH [-].
+    friction, friction_H : float
+        l = Re_theta cf/2 and its slope [-].
+    dissipation, dissipation_H : float
+        d = 2 CD Re_theta/H* and its slope [-].
+    """
+    inside = min(max(H, LEAST_H), GREATEST_H)
+    beyond = H - inside
+    t = 1.0 / (inside - 1.0)
+    ratio, ratio_t = polynomial(ENERGY_FIT, t)
+    energy = ratio * (inside - 1.0)
+    energy_H = ratio - ratio_t * t
+    friction, friction_t = polynomial(FRICTION_FIT, t)
+    friction_H = -friction_t * t * t
+    dissipation, dissipation_t = polynomial(DISSIPATION_FIT, t)
+    dissipation_H = -dissipation_t * t * t
+    return (
+        energy + energy_H * beyond,
+        energy_H,
+        friction + friction_H * beyond,
+        friction_H,
+        dissipation + dissipation_H * beyond,
+        dissipation_H,
+    )

@@ -1,0 +1,133 @@
+"""How the stations of a section's layers are laid out, and how they hang on the outer flow.
+
+Nodes 0 .. n-1 are the contour from the upper to the lower edge, n .. n+w-1 the wake. Displacement
+enters as the signed mass defect M = q delta*, q being the signed speed along the contour: with both
+signed, the influence matrix does not depend on where the stagnation point lies. A station's state
+is a row (t, d, l, s, xi): logarithms of theta, delta* and u_e, the third unknown, and its length
+from the stagnation point. Sides are 0, upper, and 1, lower; station k of a side counts from the
+stagnation point.
+"""
+
+from __future__ import annotations
+
+import math
+
+from optim.aerodynamics.compressibility import compressed_speed
+from optim.aerodynamics.kernels import njit
+from optim.aerodynamics.laminar import STAGNATION_H, STAGNATION_THETA
+
+UPPER, LOWER = 0, 1
+
+NEVER = 1 << 30
+"""Station number of a transition that does not happen."""
+
+LEAST_LENGTH = 1e-6
+"""The two stations beside the stagnation point are kept this far from it [chords]."""
+
+STAGNATION_TRUST = 0.5
+"""Greatest |ln| by which delta* beside the stagnation point may miss Hiemenz's flow [-]."""
+
+LEAST_SPEED = 1e-10
+"""Speeds are kept this far from zero where their logarithm is taken [-]."""
+
+
+@njit
+def node_of(side, k, js):  # type: ignore[no-untyped-def]
+    """Return the node of station k; js is the last node of the upper side."""
+    return js - k if side == UPPER else js + 1 + k
+
+
+@njit
+def stations_of(side, js, n):  # type: ignore[no-untyped-def]
+    """Return the number of stations of a side."""
+    return js + 1 if side == UPPER else n - 1 - js
+
+
+@njit
+def stagnation_node(q, n, near):  # type: ignore[no-untyped-def]
+    """Return the node before the change of sign of the speed that lies nearest to `near`."""
+    best = -1
+    for j in range(n - 1):
+        if q[j] < 0.0 <= q[j + 1] and (best < 0 or abs(j - near) < abs(best - near)):
+            best = j
+    return best
+
+
+@njit
+def arc_lengths(x, y, s):  # type: ignore[no-untyped-def]
+    """Fill the length along the polygon from the first node."""
+    s[0] = 0.0
+    for j in range(len(x) - 1):
+        s[j + 1] = s[j] + math.hypot(x[j + 1] - x[j], y[j + 1] - y[j])
+
+
+@njit
+def outer_speed(stream, influence, alpha, M, q):  # type: ignore[no-untyped-def]
+    """Fill the signed speeds for an angle and a mass defect."""
+    c = math.cos(alpha)
+    sn = math.sin(alpha)
+    for i in range(len(q)):
+        total = c * stream[i, 0] + sn * stream[i, 1]
+        row = influence[i]
+        for j in range(len(M)):
+            total += row[j] * M[j]
+        q[i] = total
+
+
+@njit
+def place_stagnation(q, s, js):  # type: ignore[no-untyped-def]
+    """Return the stagnation point on the contour and the slope of the speed there."""
+    slope = (q[js + 1] - q[js]) / (s[js + 1] - s[js])
+    return s[js] - q[js] / slope, slope
+
+
+@njit
+def keep_from_stagnation(q, slope, js):  # type: ignore[no-untyped-def]
+    """Keep the speeds of the two stations beside the stagnation point from zero."""
+    q[js] = min(q[js], -slope * LEAST_LENGTH)
+    q[js + 1] = max(q[js + 1], slope * LEAST_LENGTH)
+
+
+@njit
+def set_lengths(X, s, sw, s0, js, n):  # type: ignore[no-untyped-def]
+    """Fill the lengths from the stagnation point; the wake counts on from the longer side."""
+    for i in range(n):
+        X[i, 4] = max(s0 - s[i] if i <= js else s[i] - s0, LEAST_LENGTH)
+    start = 1.0
+    for i in range(n, len(X)):
+        X[i, 4] = start + sw[i - n]
+
+
+@njit
+def set_speed_and_displacement(X, M, q, k):  # type: ignore[no-untyped-def]
+    """Fill l and d of all stations from the signed speed and mass defect."""
+    for i in range(len(q)):
+        speed = max(abs(q[i]), LEAST_SPEED)
+        u, unused = compressed_speed(speed, k)
+        X[i, 2] = math.log(u)
+        X[i, 1] = math.log(max(abs(M[i]), 1e-300) / speed)
+
+
+@njit
+def stagnation_thickness(slope, Re):  # type: ignore[no-untyped-def]
+    """Return ln theta of Hiemenz's flow for a slope du/ds."""
+    return math.log(STAGNATION_THETA) - 0.5 * math.log(Re * slope)
+
+
+@njit
+def mend_stagnation(X, M, q, s, js, n, Re):  # type: ignore[no-untyped-def]
+    """Give stations that changed side, or that lead a side, the stagnation state."""
+    unused, slope = place_stagnation(q, s, js)
+    t = stagnation_thickness(slope, Re)
+    delta = STAGNATION_H * math.exp(t)
+    for i in range(n):
+        upper = i <= js
+        wrong = (M[i] >= 0.0) if upper else (M[i] <= 0.0)
+        speed = max(abs(q[i]), LEAST_SPEED)
+        if i in (js, js + 1):
+            # so near the stagnation point a small change of the speed is a large one of M/q
+            wrong = wrong or abs(math.log(abs(M[i]) / (speed * delta))) > STAGNATION_TRUST
+        if wrong:
+            M[i] = -speed * delta if upper else speed * delta
+            X[i, 0] = t
+            X[i, 3] = 0.0

@@ -1,0 +1,68 @@
+"""What a section's outer flow is for all its conditions: matrices, nodes and lengths."""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+
+from optim.aerodynamics.layout import arc_lengths
+from optim.aerodynamics.wake import outer_flow
+from optim.arrays import FloatArray, check_finite, check_shape
+
+
+class Outer:
+    """The outer flow about one section.
+
+    Parameters
+    ----------
+    nodes : (panels + 1, 2) array
+        Contour from the upper edge over the nose to the lower edge [chords].
+
+    Attributes
+    ----------
+    x, y, s : (n,) array
+        Nodes and their length along the contour.
+    xw, yw, sw : (w,) array
+        The same of the wake.
+    stream, influence : (n + w, 2), (n + w, n + w) array
+        Speeds in unit streams at 0 and 90 degrees, and by the signed mass defect.
+    gap : float
+        Gap of the edge [chords].
+    """
+
+    def __init__(self, nodes: FloatArray) -> None:
+        check_shape("nodes", nodes, {"panels + 1": None, "x, y": 2})
+        check_finite("nodes", nodes)
+        self.x = np.ascontiguousarray(nodes[:, 0])
+        self.y = np.ascontiguousarray(nodes[:, 1])
+        self.stream, self.influence, self.xw, self.yw = outer_flow(self.x, self.y)
+        self.n = len(self.x)
+        self.total = len(self.influence)
+        self.s = np.zeros(self.n)
+        arc_lengths(self.x, self.y, self.s)
+        self.sw = np.zeros(len(self.xw))
+        arc_lengths(self.xw, self.yw, self.sw)
+        self.gap = math.hypot(self.x[0] - self.x[-1], self.y[0] - self.y[-1])
+        self.nose = int(np.argmin(self.x))
+        self.s_nose = float(self.s[self.nose])
+
+    def trips(self, upper: float, lower: float) -> FloatArray:
+        """Return the lengths along the contour of forced transition, given as x/c.
+
+        At 1 or beyond a side is free: its length then lies off the contour.
+        """
+        x, s, nose = self.x, self.s, self.nose
+        up = float(np.interp(-upper, -x[: nose + 1], s[: nose + 1])) if upper < 1.0 else -1.0
+        low = float(np.interp(lower, x[nose:], s[nose:])) if lower < 1.0 else float(s[-1]) + 1.0
+        return np.array([up, low])
+
+    def angle_of_lift(self, cl: float) -> float:
+        """Return the angle at which the inviscid circulation gives a lift; nan if none does."""
+        step = np.diff(self.s)
+        q = self.stream[: self.n]
+        circulation = -2.0 * np.sum(0.5 * (q[1:] + q[:-1]) * step[:, None], axis=0)
+        size = math.hypot(circulation[0], circulation[1])
+        if abs(cl) >= size:
+            return math.nan
+        return math.asin(cl / size) - math.atan2(circulation[0], circulation[1])
