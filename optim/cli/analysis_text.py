@@ -54,7 +54,7 @@ def _percent(value: float) -> str:
 
 
 def _state(point: Document) -> str:
-    if math.isnan(point["reynolds"]):
+    if not math.isfinite(point["reynolds"]):
         return f"inviscid, M {point['mach']:g}, {point['panels']} panels"
     return (
         f"Re {point['reynolds']:g}, M {point['mach']:g}, N {point['n_factor']:g}, "
@@ -117,6 +117,8 @@ def _derived_table(derived: Document) -> str:
 def _derived_cell(value: Any) -> str:  # noqa: ANN401  a word, a number, a range or nothing
     if isinstance(value, str):
         return value.replace("_", " ")
+    if value is None:
+        return "-"
     if isinstance(value, list | tuple):
         return " to ".join(number(end, ".4g") for end in value)
     return number(value, ".5g")

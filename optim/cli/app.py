@@ -28,6 +28,10 @@ INTERRUPTED = 130
 READER_GONE = 141
 """128 + SIGPIPE, the shell's own."""
 
+THREADS = ("OMP_NUM_THREADS", "OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS", "NUMBA_NUM_THREADS")
+"""Set to 1 before numpy is loaded, as in the workers of a run: the last bit of a sum may depend on
+the threads, and a recorded design flown again has to give the archived numbers."""
+
 DEBUG = "--debug"
 
 NAME = "sectionwright"
@@ -108,6 +112,7 @@ def main() -> None:
     arguments = sys.argv[1:]
     if DEBUG not in arguments:
         sys.excepthook = report_bug
+    os.environ.update(dict.fromkeys(THREADS, "1"))
     warnings.showwarning = console.show_warning
     code = run([word for word in arguments if word != DEBUG])
     sys.exit(code)

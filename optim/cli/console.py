@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
+import os
 import sys
 from typing import TextIO
+
+from optim.errors import Fault, InputError
 
 CAUTION = (
     "Caution: computed flow about a section, no substitute for tunnel and flight test, "
@@ -31,6 +34,11 @@ def say(line: str) -> None:
     """Write one line to standard error."""
     sys.stderr.write(f"{line}\n")
     sys.stderr.flush()
+
+
+def misuse(message: str) -> InputError:
+    """Return the refusal of words on the command line: what is wrong, what is accepted."""
+    return InputError([Fault(message, file="sectionwright")])
 
 
 class ReaderGoneError(Exception):
@@ -95,5 +103,6 @@ def prepare_kernels() -> None:
     from optim.aerodynamics.kernels import cache_folder  # noqa: PLC0415  loads the compiler
 
     folder = cache_folder()
-    if folder is not None and not any(folder.rglob("*.nbi")):
-        say("compiling the flow kernels, once per installation; this takes a minute or two ...")
+    compiled = os.environ.get("NUMBA_DISABLE_JIT", "0") == "0"
+    if compiled and folder is not None and not any(folder.rglob("*.nbi")):
+        say("compiling the flow kernels, once per installation; this takes about a minute ...")

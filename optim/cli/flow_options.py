@@ -6,7 +6,7 @@ import math
 from dataclasses import dataclass, fields
 from typing import TYPE_CHECKING
 
-import typer
+from optim.cli.console import misuse
 
 if TYPE_CHECKING:
     from optim.report.analysis import Asked
@@ -62,7 +62,7 @@ class FlowOptions:
 
         Raises
         ------
-        typer.BadParameter
+        InputError
             If something is missing, out of range or given twice.
         """
         from optim.aerodynamics.operating_point import OperatingPoint  # noqa: PLC0415
@@ -94,14 +94,14 @@ class FlowOptions:
             self._refuse_viscous()
             return (math.nan,)
         if self.reynolds is None:
-            raise typer.BadParameter("give --reynolds R[,R...], or --inviscid.")
+            raise misuse("give --reynolds R[,R...], or --inviscid.")
         return _several("--reynolds", self.reynolds, _reynolds_range())
 
     def _refuse_viscous(self) -> None:
         viscous = ("--reynolds", "--n-factor", "--trip-upper", "--trip-lower")
         without_effect = [name for name in self.written() if name in viscous]
         if without_effect:
-            raise typer.BadParameter(
+            raise misuse(
                 f"{', '.join(without_effect)} has no effect with --inviscid; leave it out."
             )
 
@@ -110,7 +110,7 @@ class FlowOptions:
         given = [name for name in ("alpha", "cl", "sweep") if getattr(self, name) is not None]
         if len(given) != 1:
             found = " and ".join(f"--{name}" for name in given) or "none of them"
-            raise typer.BadParameter(
+            raise misuse(
                 f"found {found}; accepted is one of --alpha A[,A...], --cl C[,C...] and "
                 f"--sweep FIRST:LAST:STEP."
             )
@@ -136,10 +136,10 @@ def _sweep_degrees(text: str) -> list[float]:
     except (ValueError, ZeroDivisionError):
         possible = False
     if not possible:
-        raise typer.BadParameter(
-            f"{text!r} is no sweep; accepted is FIRST:LAST:STEP in degrees, such as -4:14:1, with "
-            f"a step that leads from the first to the last in at most {LONGEST_SWEEP} steps.",
-            param_hint="--sweep",
+        raise misuse(
+            f"--sweep {text!r} is no sweep; accepted is FIRST:LAST:STEP in degrees, such as "
+            f"-4:14:1, with a step that leads from the first to the last in at most "
+            f"{LONGEST_SWEEP} steps."
         )
     return sweep_angles(first, last, step)
 
@@ -158,7 +158,7 @@ def _read(name: str, text: str, accepted: Value) -> float:
     try:
         return float(accepted.read(text))
     except UnitError as error:
-        raise typer.BadParameter(str(error), param_hint=name) from error
+        raise misuse(f"{name}: {error}") from error
 
 
 def _reynolds_range() -> Value:

@@ -7,8 +7,10 @@ from collections.abc import Iterator
 from contextlib import contextmanager
 from dataclasses import dataclass
 
-from rich.console import Console
+from rich.console import Console, Group
+from rich.live import Live
 from rich.progress import BarColumn, MofNCompleteColumn, Progress, TaskID, TextColumn
+from rich.text import Text
 
 from optim.cli.console import duration, failures, prepare_kernels, say
 from optim.runner.events import (
@@ -81,41 +83,35 @@ def _state(event: GenerationDone) -> str:
 
 @dataclass
 class _LiveBar:
-    """A bar of generations with the state of the run under it."""
+    """A bar of generations, and under it the state of the run in words."""
 
-    shown: Progress
+    bar: Progress
     generations: TaskID
+    state: Text
+    live: Live
 
     @classmethod
     @contextmanager
     def make(cls) -> Iterator[_LiveBar]:
         """Yield a bar that is on the screen."""
-        columns = (
-            TextColumn("{task.description}"),
-            BarColumn(),
-            MofNCompleteColumn(),
-            TextColumn("{task.fields[state]}"),
-        )
-        with Progress(*columns, console=Console(stderr=True)) as shown:
-            yield cls(shown, shown.add_task("generations", total=None, state="", start=True))
+        bar = Progress(TextColumn("{task.description}"), BarColumn(), MofNCompleteColumn())
+        state = Text()
+        with Live(Group(bar, state), console=Console(stderr=True)) as live:
+            yield cls(bar, bar.add_task("generations", total=None), state, live)
 
     def hear(self, event: Event) -> None:
         """Show an event."""
         match event:
             case WorkersStarting():
                 prepare_kernels()
-                self.shown.update(self.generations, state=f"starting {_workers(event.workers)}")
+                self.state.plain = f"starting {_workers(event.workers)} ..."
             case SessionBegan():
-                self.shown.console.print(_began(event), highlight=False, markup=False)
-                self.shown.update(
-                    self.generations,
-                    total=event.generations,
-                    completed=event.generations_done,
-                    state="",
-                )
+                self.state.plain = ""
+                self.live.console.print(_began(event), highlight=False, markup=False)
+                done, total = event.generations_done, event.generations
+                self.bar.update(self.generations, total=total, completed=done)
             case GenerationDone():
-                self.shown.update(
-                    self.generations, completed=event.generation, state=_state(event)
-                )
+                self.state.plain = _state(event)
+                self.bar.update(self.generations, completed=event.generation)
             case RunEnded():
                 pass

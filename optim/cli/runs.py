@@ -9,10 +9,10 @@ from typing import TYPE_CHECKING, Annotated, Any
 
 import typer
 
-from optim.cli.console import duration, failures, say, show
+from optim.cli.console import duration, failures, misuse, say, show
 from optim.cli.output import number, write_json
-from optim.cli.studies import AsJson, StudyFile
-from optim.errors import Fault, InputError, StoppedEarlyError, StudyError
+from optim.cli.studies import AsJson, Plot, StudyFile, faults_located
+from optim.errors import Fault, InputError, StoppedEarlyError
 
 if TYPE_CHECKING:
     from optim.archive.reader import RunStatus
@@ -36,7 +36,7 @@ def _time_of_day(text: str | None) -> str | None:
         try:
             next_time_of_day(text, datetime.now().astimezone())
         except ValueError as error:
-            raise typer.BadParameter(str(error)) from error
+            raise misuse(f"--until: {error}") from error
     return text
 
 
@@ -69,7 +69,7 @@ def run(
     _refuse_existing(archive)
     for warning in study.warnings:
         say(f"warning: {warning}")
-    try:
+    with faults_located(study):
         Problem.from_study(study)
         _make_folder(archive.parent)
         settings = _settings(workers, generations, until)
@@ -79,8 +79,6 @@ def run(
             lambda listener: start_run(changed, archive, settings, listener),
             quiet=quiet,
         )
-    except StudyError as error:
-        raise StudyError([study.located(fault) for fault in error.faults]) from error
 
 
 def resume(
@@ -226,9 +224,7 @@ def front(
     as_csv: Annotated[
         bool, typer.Option("--csv", help="One row a design on standard output.")
     ] = False,
-    plot: Annotated[
-        Path | None, typer.Option(metavar="FILE", help="Draw it: .png, .svg or .pdf.")
-    ] = None,
+    plot: Plot = None,
 ) -> None:
     """Show the feasible designs that no other feasible design beats in everything."""
     from optim.archive.reader import open_run  # noqa: PLC0415
@@ -238,7 +234,7 @@ def front(
     from optim.report.judgement import as_recorded  # noqa: PLC0415
 
     if as_json and as_csv:
-        raise typer.BadParameter("accepted is one of --json and --csv.")
+        raise misuse("accepted is one of --json and --csv.")
     other = None
     if study_file is not None:
         from optim.study.load import load_study  # noqa: PLC0415
@@ -250,7 +246,8 @@ def front(
         else:
             from optim.report.rejudged import rejudged  # noqa: PLC0415
 
-            judgement = rejudged(opened, other)
+            with faults_located(other):
+                judgement = rejudged(opened, other)
         document = front_document(opened, judgement)
     if plot is not None:
         from optim.report.figures import save  # noqa: PLC0415

@@ -10,18 +10,17 @@ from typing import TYPE_CHECKING, Annotated, Any
 import typer
 
 from optim.cli.analysis_text import analysis_rows, analysis_text
-from optim.cli.console import CAUTION, prepare_kernels, say, show
+from optim.cli.console import CAUTION, misuse, prepare_kernels, say, show
 from optim.cli.flow_options import PANELS, FlowOptions
 from optim.cli.output import number, table, write_csv, write_json
 from optim.cli.section_argument import RecordedDesign, recorded_design, section_of
-from optim.cli.studies import AsJson
+from optim.cli.studies import AsJson, Plot
 from optim.errors import Fault, InputError
 
 if TYPE_CHECKING:
+    from optim.aerodynamics.evaluator import SectionEvaluator
     from optim.geometry.parameterisation import Parameterisation
-    from optim.report.analysis import Analysed, MakeEvaluator
-
-Plot = Annotated[Path | None, typer.Option(metavar="FILE", help="Draw it: .png, .svg or .pdf.")]
+    from optim.report.analysis import Analysed
 
 
 def analyse(
@@ -75,7 +74,7 @@ def analyse(
         inviscid, check_grid,
     )  # fmt: skip
     if as_json and as_csv:
-        raise typer.BadParameter("accepted is one of --json and --csv.")
+        raise misuse("accepted is one of --json and --csv.")
     if condition is None:
         answers = _at_points(words, options)
     else:
@@ -104,7 +103,7 @@ def _at_points(words: list[str], options: FlowOptions) -> list[Analysed]:
     return [one for section in sections for one in flown(section, asked, make)]
 
 
-def _evaluator() -> MakeEvaluator:
+def _evaluator() -> type[SectionEvaluator]:
     """Return the coupled evaluator, whose kernels are compiled at first use."""
     prepare_kernels()
     from optim.aerodynamics.evaluator import SectionEvaluator  # noqa: PLC0415
@@ -114,7 +113,7 @@ def _evaluator() -> MakeEvaluator:
 
 def _at_condition(words: list[str], condition: str, options: FlowOptions) -> list[Analysed]:
     if options.written():
-        raise typer.BadParameter(
+        raise misuse(
             f"--condition gives the whole point as it was recorded; leave out "
             f"{', '.join(options.written())}."
         )
@@ -133,13 +132,17 @@ def _recorded(word: str) -> RecordedDesign:
 
 def _recorded_flow(design: RecordedDesign, condition: str) -> Analysed:
     from optim.report.analysis import Analysed  # noqa: PLC0415
+    from optim.report.archived import peak_sought  # noqa: PLC0415
 
     _, problem = design.study_and_problem()
     if condition not in problem.condition_names:
         known = ", ".join(problem.condition_names)
         message = f"the run has no condition {condition}; accepted is {known}."
         raise InputError([Fault(message, file=design.name)])
-    return Analysed(design.section(problem), (problem.analyse(design.design, condition),))
+    flow = problem.analyse(design.design, condition)
+    if problem.conditions[problem.condition_names.index(condition)].maximum:
+        flow = peak_sought(flow)
+    return Analysed(design.section(problem), (flow,))
 
 
 class Shape(StrEnum):
@@ -254,7 +257,7 @@ def _length(text: str) -> float:
     try:
         return CHORD.read(text)
     except UnitError as error:
-        raise typer.BadParameter(str(error), param_hint="--chord") from error
+        raise misuse(f"--chord: {error}") from error
 
 
 COMMANDS: tuple[Callable[..., None], ...] = (analyse, fit, export)

@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
 from pathlib import Path
-from typing import Annotated, Any
+from typing import TYPE_CHECKING, Annotated, Any
 
 import typer
 
@@ -12,8 +13,35 @@ from optim.cli.console import duration, say, show
 from optim.cli.output import number, table, write_json
 from optim.errors import Fault, InputError, StudyError
 
+if TYPE_CHECKING:
+    from optim.study.schema import Study
+
 StudyFile = Annotated[Path, typer.Argument(metavar="STUDY.yaml", help="The study.")]
 AsJson = Annotated[bool, typer.Option("--json", help="One JSON document on standard output.")]
+
+
+def _figure_file(path: Path | None) -> Path | None:
+    """Return the path of a figure if its form is known, before anything is computed for it."""
+    from optim.report.figure_file import check_suffix  # noqa: PLC0415
+
+    if path is not None:
+        check_suffix(path)
+    return path
+
+
+Plot = Annotated[
+    Path | None,
+    typer.Option(metavar="FILE", callback=_figure_file, help="Draw it: .png, .svg or .pdf."),
+]
+
+
+@contextmanager
+def faults_located(study: Study) -> Iterator[None]:
+    """Give the faults that are found in a loaded study their places in its file."""
+    try:
+        yield
+    except StudyError as error:
+        raise StudyError([study.located(fault) for fault in error.faults]) from error
 
 
 def template(
@@ -66,10 +94,8 @@ def check(study_file: StudyFile, *, as_json: AsJson = False) -> None:
     from optim.study.load import load_study  # noqa: PLC0415
 
     study = load_study(study_file)
-    try:
+    with faults_located(study):
         problem = Problem.from_study(study)
-    except StudyError as error:
-        raise StudyError([study.located(fault) for fault in error.faults]) from error
     workers = processors()
     document = preview_document(study, problem, workers)
     if as_json:

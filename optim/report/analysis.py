@@ -9,29 +9,24 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
-from typing import Protocol
+from typing import TYPE_CHECKING
 
 from optim.aerodynamics.operating_point import OperatingPoint, SectionFlow
 from optim.arrays import FloatArray
 from optim.geometry.section import Section
 from optim.geometry.spacing import panel_nodes
-from optim.report.fields import Document, point_fields, section_fields, surface_fields
+from optim.report.fields import (
+    Document,
+    derived_fields,
+    point_fields,
+    section_fields,
+    surface_fields,
+)
 from optim.report.grid import grid_fields, panel_counts
 
-
-class Evaluator(Protocol):
-    """What is asked of the evaluator of one section."""
-
-    def flows(self, points: Sequence[OperatingPoint]) -> Sequence[SectionFlow]:
-        """Return the flows in order, each started from earlier ones of the same list."""
-
-    def inviscid(
-        self, *, alpha: float | None = None, cl: float | None = None, mach: float = 0.0
-    ) -> SectionFlow:
-        """Return the flow without friction."""
-
-
-MakeEvaluator = Callable[[FloatArray], Evaluator]
+if TYPE_CHECKING:
+    from optim.aerodynamics.evaluator import SectionEvaluator
+    from optim.aerodynamics.sweep import Derived
 
 
 @dataclass(frozen=True)
@@ -103,7 +98,8 @@ class Analysed:
         return entry
 
 
-def analyse(section: Section, asked: Asked, make: MakeEvaluator) -> list[Analysed]:
+def analyse(section: Section, asked: Asked, make: Callable[[FloatArray], SectionEvaluator]
+) -> list[Analysed]:
     """Return the flows about a section, one entry a Reynolds number.
 
     Parameters
@@ -120,18 +116,28 @@ def analyse(section: Section, asked: Asked, make: MakeEvaluator) -> list[Analyse
     answers = []
     for reynolds in asked.reynolds:
         points = [replace(point, reynolds=reynolds) for point in asked.points]
-        flows, *others = [_flown(one, points, asked) for one in evaluators]
-        grid = _grid(flows, *others) if others else None
-        answers.append(Analysed(section, flows, None, grid))
+        (flows, derived), *others = [_flown(one, points, asked) for one in evaluators]
+        grid = _grid(flows, *[found for found, _ in others]) if others else None
+        said = None if derived is None else derived_fields(derived)
+        answers.append(Analysed(section, flows, said, grid))
     return answers
 
 
 def _flown(
-    evaluator: Evaluator, points: list[OperatingPoint], asked: Asked
-) -> tuple[SectionFlow, ...]:
+    evaluator: SectionEvaluator, points: list[OperatingPoint], asked: Asked
+) -> tuple[tuple[SectionFlow, ...], Derived | None]:
+    """Return the flows in the order of the points, and what they say as a sweep."""
+    from optim.aerodynamics.sweep import derive, sweep  # noqa: PLC0415  a door that loads nothing
+
     if asked.inviscid:
-        return tuple(evaluator.inviscid(alpha=p.alpha, cl=p.cl, mach=p.mach) for p in points)
-    return tuple(evaluator.flows(points))
+        flows = [evaluator.inviscid(alpha=p.alpha, cl=p.cl, mach=p.mach) for p in points]
+        return tuple(flows), derive(flows) if asked.swept else None
+    if not asked.swept:
+        return tuple(evaluator.flows(points)), None
+    angles = sorted(p.alpha for p in points if p.alpha is not None)
+    rising, derived = sweep(evaluator, points[0], angles)
+    falls = points[0].alpha != angles[0]
+    return tuple(reversed(rising) if falls else rising), derived
 
 
 def _grid(

@@ -9,7 +9,7 @@ from __future__ import annotations
 import json
 import math
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any, cast
 
 import numpy as np
@@ -92,6 +92,11 @@ class RecordedConditions:
         )
 
 
+def peak_sought(flow: SectionFlow) -> SectionFlow:
+    """Return a flow that was sought as the peak of the lift: no angle was asked for."""
+    return replace(flow, point=replace(flow.point, alpha=math.nan, cl=None))
+
+
 def _whole(code: float) -> int:
     """Return a recorded whole number; absent ones, of designs that were lost, are zero."""
     return 0 if math.isnan(code) else int(code)
@@ -100,7 +105,7 @@ def _whole(code: float) -> int:
 def _point(row: Mapping[str, Any]) -> OperatingPoint:
     return OperatingPoint(
         reynolds=row["reynolds"],
-        alpha=0.0 if row["maximum"] else row["alpha"],
+        alpha=math.nan if row["maximum"] else row["alpha"],
         cl=row["cl"],
         mach=row["mach"],
         n_factor=row["n_factor"],

@@ -7,10 +7,13 @@ that both come out under the same names with the same numbers.
 from __future__ import annotations
 
 import math
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from optim.aerodynamics.operating_point import SectionFlow, SideState, Surface
 from optim.geometry.section import Section
+
+if TYPE_CHECKING:
+    from optim.aerodynamics.sweep import Derived
 
 Document = dict[str, Any]
 """Plain data; a float that is absent is not-a-number and becomes null in JSON."""
@@ -81,6 +84,28 @@ def _side_fields(side: str, state: SideState) -> Document:
         f"separation_{side}": state.separation,
         f"bubble_{side}": None if state.bubble is None else list(state.bubble),
     }
+
+
+def derived_fields(derived: Derived) -> Document:
+    """Return what a sweep says as a whole."""
+    span = derived.slope_range
+    return {
+        "alpha_zero_lift_deg": math.degrees(derived.alpha_zero_lift),
+        "lift_slope_per_deg": math.radians(derived.lift_slope),
+        "slope_range_deg": None if span is None else [math.degrees(end) for end in span],
+        "cl_max": derived.cl_max,
+        "alpha_cl_max_deg": math.degrees(derived.alpha_cl_max),
+        "aerodynamic_centre_x": derived.aerodynamic_centre_x,
+        "cm_aerodynamic_centre": derived.cm_aerodynamic_centre,
+        "cm_zero_lift": derived.cm_zero_lift,
+        "stall": derived.stall,
+        "x_cp_range": _pair(derived.x_cp_range),
+        "low_drag_range": _pair(derived.low_drag_range),
+    }
+
+
+def _pair(span: tuple[float, float] | None) -> list[float] | None:
+    return None if span is None else list(span)
 
 
 def surface_fields(surface: Surface) -> Document:

@@ -16,15 +16,13 @@ from matplotlib.figure import Figure
 
 from optim.arrays import FloatArray
 from optim.errors import Fault, InputError
+from optim.report.figure_file import check_suffix
 
 UPPER, LOWER, GREEN, AMBER = "#0072B2", "#D55E00", "#009E73", "#E69F00"
 """Blue for the upper side, vermilion for the lower one; green and amber for what else differs."""
 
 GREY, PALE = "0.45", "0.80"
 """What is there for comparison."""
-
-SUFFIXES = (".png", ".svg", ".pdf")
-"""Forms of a figure."""
 
 WIDTH = 8.0
 """Width of a figure [inch]."""
@@ -70,9 +68,7 @@ def save(figure: Figure, path: Path) -> None:
     InputError
         If the suffix is not known or the file cannot be written.
     """
-    if path.suffix.lower() not in SUFFIXES:
-        message = f"the form is told by the suffix; accepted is {', '.join(SUFFIXES)}."
-        raise InputError([Fault(message, file=str(path))])
+    check_suffix(path)
     try:
         figure.savefig(path, dpi=DOTS)
     except OSError as error:

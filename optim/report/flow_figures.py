@@ -115,7 +115,7 @@ def _mark_places(axes: Axes, answer: Analysed, flow: SectionFlow) -> None:
             axes.plot(
                 [x for x, _ in known], y, mark, color=colour, label=name, zorder=3, clip_on=False
             )
-    axes.legend(loc="upper right", ncols=3)
+    axes.legend(loc="lower right", bbox_to_anchor=(1.0, 0.95), ncols=3)
 
 
 def _on(surface: Surface, side: str) -> BoolArray:
@@ -168,10 +168,10 @@ def _finish_chord(axes: Sequence[Axes], flows: list[SectionFlow], *, viscous: bo
         axes[1].plot([], [], line, color=GREY, label=_flow_label(flow))
     axes[1].legend(loc="upper right")
     if viscous:
-        title(axes[2], "How tired is the layer? Shape factor; it separates where it is high")
+        title(axes[2], "How close is the layer to separation? Its shape factor")
         axes[2].set_ylabel("H")
         axes[2].set_ylim(1.0, 6.0)
-        title(axes[3], "What does it rub? Friction; below the line the flow runs backwards")
+        title(axes[3], "What does the layer cost? Skin friction; below zero the flow is reversed")
         axes[3].set_ylabel("1000 cf")
         axes[3].set_ylim(-2.0, 12.0)
     axes[-1].set_xlabel("x/c")
@@ -233,7 +233,7 @@ def _draw_series(axes: Sequence[Axes], answer: Analysed, look: dict[str, Any]) -
 
 def _series_label(answer: Analysed) -> str:
     reynolds = answer.flows[0].point.reynolds
-    return answer.section.name + ("" if math.isnan(reynolds) else f", Re {reynolds:g}")
+    return answer.section.name + (f", Re {reynolds:g}" if math.isfinite(reynolds) else "")
 
 
 def _drag_parts(axes: Axes, answer: Analysed) -> None:

@@ -6,7 +6,12 @@ import sys
 
 import pytest
 
+from optim.cli import app
+from optim.runner import executors
+
 HEAVY = ("numba", "pymoo")
+
+SET_THREADS = "os.environ.update(dict.fromkeys(['OMP_NUM_THREADS', 'OPENBLAS_NUM_THREADS'], '4'));"
 
 WHAT_IS_LOADED = """
 import sys
@@ -48,6 +53,15 @@ def test_looking_at_a_run_waits_for_no_compiler_and_no_search(process, run_file,
 def test_help_loads_no_library_of_numbers(process, words):
     heavy = {*HEAVY, "numpy", "scipy", "h5py", "yaml", "pint", "rich"}  # typer has pydantic
     assert loaded(process, *words).isdisjoint(heavy)
+
+
+def test_command_computes_on_one_thread_as_the_workers_do(process):
+    """Else a design flown again would differ from the archive in the last bits."""
+    assert app.THREADS == executors.THREADS
+    seen = f"import os, sys; {SET_THREADS} sys.argv = ['', 'schema']; import optim.cli.app as app\n"
+    seen += "try:\n    app.main()\nexcept SystemExit:\n    sys.stderr.write(os.environ['%s'])"
+    for name in app.THREADS:
+        assert process(program=("-c", seen % name)).stderr == "1"
 
 
 def test_python_m_optim_is_the_command(process):

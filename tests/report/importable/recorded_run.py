@@ -70,7 +70,7 @@ class ClosedForm:
     def inviscid(self, *, alpha=None, cl=None, mach=0.0):
         angle = alpha if alpha is not None else cl / (2.0 * math.pi) - 2.0 * self.camber
         lift = 2.0 * math.pi * (angle + 2.0 * self.camber)
-        point = OperatingPoint(math.nan, alpha=alpha, cl=cl, mach=mach)
+        point = OperatingPoint(math.inf, alpha=alpha, cl=cl, mach=mach)
         surface = replace(
             self._surface(lift),
             theta=None, delta_star=None, shape_factor=None, skin_friction=None, n=None,
