@@ -29,7 +29,7 @@ CASES = [
     ("vandevooren_sym15_te18", 0),
     ("vandevooren_sym15_te18", 5),
 ]
-"""Section and angle of attack [deg]; Karman-Trefftz and van de Vooren maps, importable/conformal.py."""
+"""Section and angle of attack [deg]; maps in importable/conformal.py."""
 
 
 def speeds(outer, alpha):
@@ -121,9 +121,7 @@ def test_observed_order_of_the_speed(name, degrees, speed_error):
     assert order >= 1.8
 
 
-@pytest.mark.parametrize(
-    ("name", "degrees"), [case for case in CASES if "cambered" in case[0]]
-)
+@pytest.mark.parametrize(("name", "degrees"), [case for case in CASES if "cambered" in case[0]])
 def test_observed_order_of_the_lift(name, degrees, exact_sections, solved):
     """On the symmetric sections the error of the lift is below 3e-5 already at 80 panels."""
     section, alpha = exact_sections[name][0], math.radians(degrees)
@@ -152,8 +150,8 @@ def test_ellipse_with_the_rear_stagnation_point_at_its_end(thickness):
 
 
 def test_thin_cambered_section_tends_to_thin_aerofoil_theory(naca):
-    """NACA 24xx: alpha_0 = -2.0772 deg, cm = -0.05312, slope 2 pi (Glauert, Elements of Aerofoil and
-    Airscrew Theory; values computed from his integrals), taken to zero thickness from 2 and 4 %."""
+    """NACA 24xx: alpha_0 = -2.0772 deg, cm = -0.05312, slope 2 pi (Glauert, The Elements of Aerofoil
+    and Airscrew Theory; computed from his integrals), taken to zero thickness from 2 and 4 %."""
     zero, moment, slope = [], [], []
     for number in ("2402", "2404"):
         evaluator = naca(number)
@@ -168,16 +166,16 @@ def test_thin_cambered_section_tends_to_thin_aerofoil_theory(naca):
 
 
 TABLE_TOLERANCE = {"0006": 0.015, "0009": 0.015, "0012": 0.015, "0015": 0.025, "0021": 0.035}
-"""Relative, of (v/V)^2: the hand computations of the report are off by up to 1.2 % at 12 %, 2.2 % at
-15 % and 3.4 % at 21 % against a fine panel method apart from this program."""
+"""Relative, of (v/V)^2: the hand computations of the report are off by up to 1.2 % at 12 %, 2.2 %
+at 15 % and 3.4 % at 21 % against a fine panel method apart from this program."""
 
 
 @pytest.mark.published
 @pytest.mark.parametrize("number", list(TABLE_TOLERANCE))
 def test_velocities_of_the_four_digit_thickness_forms(number, naca, table):
-    """NACA Report 824, appendix. At 0.5 % chord the table itself is off by 0.016 (0012) to 0.07 (0006):
-    there, as everywhere ahead of the edge, a separate panel method judges. At 95 % the answer hangs on
-    how the blunt base is modelled: 0012 is 1.5 % below the table, so 2 % is asked there."""
+    """NACA Report 824, appendix. At 0.5 % chord the table is off by 0.016 (0012) to 0.07 (0006):
+    there, as everywhere ahead of the edge, a separate panel method judges. At 95 % the answer hangs
+    on how the blunt base is modelled: 0012 is 1.5 % below the table, so 2 % is asked there."""
     outer = naca(number, 320).outer
     upper = slice(outer.nose, None, -1)
     square = CubicSpline(outer.x[upper], speeds(outer, 0.0)[: outer.n][upper] ** 2)
@@ -328,8 +326,8 @@ def test_wake_speeds_follow_the_exact_flow(name, exact_sections, solved):
 
 
 def test_sources_of_a_wake_behind_a_thin_section(naca):
-    """A wake that thickens evenly from a to b: u = (sigma/2 pi) ln((x - a)/(b - x)) on the axis, and
-    a thin symmetric section in its plane does not answer (Katz & Plotkin, chapter 3)."""
+    """A wake that thickens evenly from a to b: u = (sigma/2 pi) ln((x - a)/(b - x)) on the axis,
+    and a thin symmetric section in its plane does not answer (Katz & Plotkin, chapter 3)."""
     outer = naca("0002").outer
     flat = Outer(np.c_[outer.x, outer.y])
     n, sw = flat.n, flat.sw
