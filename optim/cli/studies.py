@@ -107,6 +107,8 @@ def check(study_file: StudyFile, *, as_json: AsJson = False) -> None:
 
 
 def _preview_text(document: dict[str, Any], workers: int) -> str:
+    from optim.report.units import as_read  # noqa: PLC0415
+
     reach, cost = document["reachable"], document["estimate"]
     return "\n".join(
         [
@@ -124,7 +126,7 @@ def _preview_text(document: dict[str, Any], workers: int) -> str:
             table(
                 ["", "5 %", "median", "95 %"],
                 [
-                    [name, *[number(reach[name][p], ".4f") for p in ("p5", "p50", "p95")]]
+                    [name, *[as_read(reach[name][p], "chord") for p in ("p5", "p50", "p95")]]
                     for name in ("thickness", "camber", "nose_radius")
                     if name in reach
                 ],

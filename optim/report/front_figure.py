@@ -52,6 +52,7 @@ def front_figure(judgement: Judgement) -> Figure:
         for axes, (across, up) in zip(panels, pairs, strict=False):
             _trade(axes, judgement, rows, across, up)
         title(panels[0], f"{judgement.study}: what is traded for what")
+        panels[0].legend(loc="best")
         if limits:
             _held(panels[-1], judgement, rows)
     return figure
@@ -67,7 +68,7 @@ def _trade(axes: Axes, judgement: Judgement, rows: IntArray, across: int, up: in
     for here, mark, colour, size, name in [
         (beaten[:: 1 + len(beaten) // MOST_GREY], ".", PALE, 3, f"feasible, beaten: {len(beaten)}"),
         (np.setdiff1d(rows, better), "o", UPPER, 5, f"front: {len(rows)}"),
-        (better, "^", GREEN, 6, f"of it better than the baseline in everything: {len(better)}"),
+        (better, "^", GREEN, 6, f"of it better than the baseline in all: {len(better)}"),
     ][: 3 if len(better) else 2]:
         axes.plot(
             *values[here].T, mark, color=colour, markersize=size, label=name,
@@ -78,7 +79,6 @@ def _trade(axes: Axes, judgement: Judgement, rows: IntArray, across: int, up: in
     axes.set_xlabel(_label(aims[0]))
     axes.set_ylabel(_label(aims[1]))
     _look_at_the_front(axes, np.vstack([values[rows], values[:1]]))
-    axes.legend(loc="best")
 
 
 def _label(aim: Aim) -> str:
@@ -98,7 +98,10 @@ def _baseline(axes: Axes, judgement: Judgement, place: FloatArray, signs: FloatA
     )  # fmt: skip
     x, y = place
     far_x, far_y = place - signs * 1e3 * (np.abs(place) + 1.0)
-    axes.fill_between(sorted([x, far_x]), *sorted([y, far_y]), color=LOWER, alpha=0.06, linewidth=0)
+    axes.fill_between(
+        sorted([x, far_x]), *sorted([y, far_y]), color=LOWER, alpha=0.06, linewidth=0,
+        label="better than the baseline in both",
+    )  # fmt: skip
 
 
 def _look_at_the_front(axes: Axes, shown: FloatArray) -> None:

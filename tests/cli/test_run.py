@@ -111,3 +111,42 @@ def test_whatever_stops_a_run_is_exit_3(command, tmp_path, monkeypatch, kind):
     done = command("run", study, "--output", tmp_path / "small.h5", "--quiet")
     assert done.code == 3
     assert "sectionwright resume" in done.err
+
+
+POINT = set(
+    "alpha_deg reynolds mach n_factor panels cl cd cd_friction cd_pressure cm_quarter x_cp "
+    "lift_to_drag stagnation_x stagnation_side cp_min cp_min_x transition_upper transition_lower "
+    "transition_kind_upper transition_kind_lower separation_upper separation_lower bubble_upper "
+    "bubble_lower outcome iterations residual second_solution band".split()
+)
+DERIVED = set(
+    "alpha_zero_lift_deg lift_slope_per_deg slope_range_deg cl_max alpha_cl_max_deg "
+    "aerodynamic_centre_x cm_aerodynamic_centre cm_zero_lift stall x_cp_range "
+    "low_drag_range".split()
+)
+SECTION = set(
+    "name thickness thickness_x camber camber_x area nose_radius trailing_edge_gap "
+    "trailing_edge_angle_deg rotation_deg scale".split()
+)
+
+
+def test_sweep_has_both_ends_and_what_it_says_as_a_whole(tmp_path):
+    """NACA 0012 is symmetric: no lift at no angle, and equal drag at plus and minus."""
+    words = ("analyse", "naca:0012", "--reynolds", "3e6", "--json", "--sweep")
+    code, out, err = finished(tmp_path, *words, "-4:4:2")
+    assert code == 0, err
+    (result,) = json.loads(out)["results"]
+    points = result["points"]
+    assert [point["alpha_deg"] for point in points] == pytest.approx([-4.0, -2.0, 0.0, 2.0, 4.0])
+    assert all(point.keys() == POINT for point in points)
+    assert result["section"].keys() == SECTION
+    derived = result["derived"]
+    assert derived.keys() == DERIVED
+    assert derived["alpha_zero_lift_deg"] == pytest.approx(0.0, abs=0.01)
+    assert derived["lift_slope_per_deg"] == pytest.approx(0.11, rel=0.1)
+    assert derived["cl_max"] is None
+    assert derived["stall"] == "not_reached"
+    assert points[0]["cd"] == pytest.approx(points[-1]["cd"], rel=1e-3)
+    assert points[0]["transition_upper"] == pytest.approx(points[-1]["transition_lower"], abs=1e-3)
+    code, out, _ = finished(tmp_path, *words, "4:-4:-2")
+    assert json.loads(out)["results"][0]["points"] == points[::-1]
