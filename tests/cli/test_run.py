@@ -114,19 +114,13 @@ def test_whatever_stops_a_run_is_exit_3(command, tmp_path, monkeypatch, kind):
 
 
 POINT = set(
-    "alpha_deg reynolds mach n_factor panels cl cd cd_friction cd_pressure cm_quarter x_cp "
-    "lift_to_drag stagnation_x stagnation_side cp_min cp_min_x transition_upper transition_lower "
-    "transition_kind_upper transition_kind_lower separation_upper separation_lower bubble_upper "
-    "bubble_lower outcome iterations residual second_solution band".split()
+    ["alpha_deg", "reynolds", "mach", "n_factor", "panels", "cl", "cd", "cd_friction", "cd_pressure", "cm_quarter", "x_cp", "lift_to_drag", "stagnation_x", "stagnation_side", "cp_min", "cp_min_x", "transition_upper", "transition_lower", "transition_kind_upper", "transition_kind_lower", "separation_upper", "separation_lower", "bubble_upper", "bubble_lower", "outcome", "iterations", "residual", "second_solution", "band"]
 )
 DERIVED = set(
-    "alpha_zero_lift_deg lift_slope_per_deg slope_range_deg cl_max alpha_cl_max_deg "
-    "aerodynamic_centre_x cm_aerodynamic_centre cm_zero_lift stall x_cp_range "
-    "low_drag_range".split()
+    ["alpha_zero_lift_deg", "lift_slope_per_deg", "slope_range_deg", "cl_max", "alpha_cl_max_deg", "aerodynamic_centre_x", "cm_aerodynamic_centre", "cm_zero_lift", "stall", "x_cp_range", "low_drag_range"]
 )
 SECTION = set(
-    "name thickness thickness_x camber camber_x area nose_radius trailing_edge_gap "
-    "trailing_edge_angle_deg rotation_deg scale".split()
+    ["name", "thickness", "thickness_x", "camber", "camber_x", "area", "nose_radius", "trailing_edge_gap", "trailing_edge_angle_deg", "rotation_deg", "scale"]
 )
 
 
