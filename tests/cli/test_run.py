@@ -113,15 +113,22 @@ def test_whatever_stops_a_run_is_exit_3(command, tmp_path, monkeypatch, kind):
     assert "sectionwright resume" in done.err
 
 
-POINT = set(
-    ["alpha_deg", "reynolds", "mach", "n_factor", "panels", "cl", "cd", "cd_friction", "cd_pressure", "cm_quarter", "x_cp", "lift_to_drag", "stagnation_x", "stagnation_side", "cp_min", "cp_min_x", "transition_upper", "transition_lower", "transition_kind_upper", "transition_kind_lower", "separation_upper", "separation_lower", "bubble_upper", "bubble_lower", "outcome", "iterations", "residual", "second_solution", "band"]
-)
-DERIVED = set(
-    ["alpha_zero_lift_deg", "lift_slope_per_deg", "slope_range_deg", "cl_max", "alpha_cl_max_deg", "aerodynamic_centre_x", "cm_aerodynamic_centre", "cm_zero_lift", "stall", "x_cp_range", "low_drag_range"]
-)
-SECTION = set(
-    ["name", "thickness", "thickness_x", "camber", "camber_x", "area", "nose_radius", "trailing_edge_gap", "trailing_edge_angle_deg", "rotation_deg", "scale"]
-)
+POINT = {
+    "alpha_deg", "reynolds", "mach", "n_factor", "panels", "cl", "cd", "cd_friction",
+    "cd_pressure", "cm_quarter", "x_cp", "lift_to_drag", "stagnation_x", "stagnation_side",
+    "cp_min", "cp_min_x", "transition_upper", "transition_lower", "transition_kind_upper",
+    "transition_kind_lower", "separation_upper", "separation_lower", "bubble_upper",
+    "bubble_lower", "outcome", "iterations", "residual", "second_solution", "band",
+}  # fmt: skip
+DERIVED = {
+    "alpha_zero_lift_deg", "lift_slope_per_deg", "slope_range_deg", "cl_max",
+    "alpha_cl_max_deg", "aerodynamic_centre_x", "cm_aerodynamic_centre", "cm_zero_lift",
+    "stall", "x_cp_range", "low_drag_range",
+}  # fmt: skip
+SECTION = {
+    "name", "thickness", "thickness_x", "camber", "camber_x", "area", "nose_radius",
+    "trailing_edge_gap", "trailing_edge_angle_deg", "rotation_deg", "scale",
+}  # fmt: skip
 
 
 def test_sweep_has_both_ends_and_what_it_says_as_a_whole(tmp_path):
