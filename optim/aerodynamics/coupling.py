@@ -68,6 +68,17 @@ UPSTREAM_MOVE = 6
 MARCHES = 3
 """Times that a side may be marched anew because transition left its place."""
 
+PATIENCE = 5
+"""Iterations after which an unsettled state no longer holds transition up: where it is held there
+need be no solution."""
+
+EDGE_ZONE = 0.02
+"""Length ahead of the edge within which a transition that left its place is left to the wake
+[chords]; amplification brings it back if it has to."""
+
+STALLED_GROWTH = 0.05
+"""Growth of N over a station below which transition will not come soon [-]."""
+
 SETTLED = 0.3
 """Step below which the state has settled enough to tell where transition is not [-]."""
 
@@ -84,6 +95,10 @@ SHAPE_ROOM = 0.4
 LARGEST_STEP = 0.5
 """Largest change of the logarithms of theta, delta* and sqrt(Ct) in one iteration."""
 
+CAUTION = 12.0
+"""Iterations after which the largest step is halved [-]: about the least of H* Newton steps leap
+from one side to the other, and only shorter ones settle."""
+
 LARGEST_SPEED_STEP = 0.4
 """Largest relative change of an edge speed in one iteration, the two stagnation stations apart."""
 
@@ -92,7 +107,7 @@ LARGEST_TURN = math.radians(3.0)
 
 
 @njit
-def locate_transition(X, terms, js, n, side, trip, floor, turn, frac, why, settled, critical, Re, M2):  # type: ignore[no-untyped-def]
+def locate_transition(X, M, q, terms, js, n, side, trip, floor, turn, frac, why, settled, critical, Re, M2):  # type: ignore[no-untyped-def]
     """March amplification along the laminar stations of a side, filling their terms.
 
     N depends on stations upstream alone. Where it turns critical ahead of the present place, or a
@@ -104,6 +119,7 @@ def locate_transition(X, terms, js, n, side, trip, floor, turn, frac, why, settl
     count = stations_of(side, js, n)
     before = turn[side]
     held = why[side] == HELD
+    last = node_of(side, count - 1, js)
     earliest = max(floor, min(before, count) - UPSTREAM_MOVE)
     first = node_of(side, 0, js)
     X[first, 3] = 0.0
@@ -123,8 +139,10 @@ def locate_transition(X, terms, js, n, side, trip, floor, turn, frac, why, settl
             turn[side] = k
             frac[side] = f
             why[side] = FORCED if f == max((trip - X[p, 4]) / step, 0.0) else FREE
-        elif k == before + 1 or (k == before and held and not settled):
-            lost = k > before and held
+        elif (k == before and held and not settled) or (
+            k == before + 1 and X[last, 4] - X[i, 4] > EDGE_ZONE
+        ):
+            lost = k > before and held and terms[p, THIRD, 0] * step < STALLED_GROWTH
             turn[side] = k
             frac[side] = 1.0
             why[side] = HELD
@@ -132,6 +150,12 @@ def locate_transition(X, terms, js, n, side, trip, floor, turn, frac, why, settl
             break
         growth_before = terms[p, THIRD, 0]
         step_before = step
+        if k >= before:
+            # a station that was turbulent goes on from the laminar one ahead of it: behind a
+            # separated layer it could not find its way past the least of H* by itself
+            X[i, 0] = X[p, 0]
+            X[i, 1] = X[p, 1]
+            M[i] = q[i] * math.exp(X[i, 1])
         station_terms(LAMINAR, X[i], Re, M2, terms[i])
         X[i, 3] = min(N, critical)
     if turn[side] == NEVER:
@@ -439,7 +463,7 @@ def keep_shape(X, M, q, i, before, least):  # type: ignore[no-untyped-def]
 
 
 @njit
-def limit_step(X, M, q, kappa, T, S, V, z, js, n, turn):  # type: ignore[no-untyped-def]
+def limit_step(X, M, q, kappa, T, S, V, z, js, n, turn, bound):  # type: ignore[no-untyped-def]
     """Return the largest fraction of a step that is safe, and the largest change it makes."""
     nt = len(M)
     factor = 1.0
@@ -462,11 +486,11 @@ def limit_step(X, M, q, kappa, T, S, V, z, js, n, turn):  # type: ignore[no-unty
         near = js - 1 <= i <= js + 2
         if near:
             largest = max(largest, abs(dt))
-            factor = min(factor, LARGEST_STEP / max(abs(dt), 1e-30))
+            factor = min(factor, bound / max(abs(dt), 1e-30))
             continue
         change = max(abs(dt), abs(dd), abs(ds))
         largest = max(largest, change, abs(dlnq))
-        factor = min(factor, LARGEST_STEP / max(change, 1e-30))
+        factor = min(factor, bound / max(change, 1e-30))
         factor = min(factor, LARGEST_SPEED_STEP / max(abs(dlnq), 1e-30))
     turned = abs(z[nt])
     factor = min(factor, LARGEST_TURN / max(turned, 1e-30))
@@ -528,6 +552,7 @@ def newton(
     by_q = np.empty(n)
     marches = np.zeros(2, np.int64)
     floor = np.ones(2, np.int64)
+    waited = 0
     z = np.zeros(W)
     z[W - 1] = 1.0
     residual = 1e9
@@ -543,13 +568,14 @@ def newton(
         if turn[1] < NEVER:
             turn[1] = max(turn[1] - js + moved, 1)
         s0, unused = place_stagnation(q, s, js)
-        settled = change < SETTLED
+        settled = change < SETTLED or waited >= PATIENCE
+        waited = 0 if settled else waited + 1
         if settled:
             floor[:] = 1
         for side in range(2):
             trip = s0 - trips[0] if side == UPPER else trips[1] - s0
             lost = locate_transition(
-                X, terms, js, n, side, trip, floor[side], turn, frac, why, settled, critical, Re, M2
+                X, M, q, terms, js, n, side, trip, floor[side], turn, frac, why, settled, critical, Re, M2
             )
             if lost and marches[side] < MARCHES:
                 # too far to follow station by station: march the side anew, past the place lost
@@ -560,7 +586,7 @@ def newton(
                     X, M, q, js, n, side, trip, floor[side], turn, frac, k, critical, Re, M2
                 )
                 locate_transition(
-                    X, terms, js, n, side, trip, floor[side], turn, frac, why, settled,
+                    X, M, q, terms, js, n, side, trip, floor[side], turn, frac, why, settled,
                     critical, Re, M2,
                 )  # fmt: skip
         mismatch = outer_rows(V, stream, influence, alpha, M, q)
@@ -605,7 +631,9 @@ def newton(
         if not (residual < 1e8) or not np.all(np.isfinite(A)):
             return False, js, alpha, iteration, residual
         z[: nt + 2] = np.linalg.solve(A[:, : nt + 2], -A[:, W - 1])
-        factor, change = limit_step(X, M, q, kappa, T, S, V, z, js, n, turn)
+        factor, change = limit_step(
+            X, M, q, kappa, T, S, V, z, js, n, turn, LARGEST_STEP / (1.0 + iteration / CAUTION)
+        )
         if not (change < 1e12):
             return False, js, alpha, iteration, residual
         history[iteration, 1] = change

@@ -39,7 +39,7 @@ from optim.outcomes import Outcome
 TOLERANCE = 1e-8
 """Residual of the logarithmic equations at which a flow is solved [-]."""
 
-BUDGET = 40
+BUDGET = 80
 """Iterations of one attempt; a converging one takes 5 to 20."""
 
 NEAR_ANGLE = math.radians(4.0)

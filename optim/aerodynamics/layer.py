@@ -197,7 +197,7 @@ def turbulent_station(t, d, l, s, Re, M2, wake, out):  # type: ignore[no-untyped
     Hs_d = Hs_H * HkH
     Hs_l = Hs_H * Hk_l + Hs_r * r_l + by_M * Me2_l
     common_terms(H, Hk, Hk_H, Hk_M, Hs, Hs_t, Hs_d, Hs_l, Me2, Me2_l, out)
-    Us, Us_s, Us_k, Us_h = slip_speed(Hs, Hk, H)
+    Us, Us_s, Us_k, Us_h = slip_speed(Hs, Hk, H, wake)
     Us_t = Us_s * Hs_t - Us_k * HkH - Us_h * H
     Us_d = Us_s * Hs_d + Us_k * HkH + Us_h * H
     Us_l = Us_s * Hs_l + Us_k * Hk_l
@@ -274,7 +274,7 @@ def stress_at_equilibrium(t, d, l, Re, M2):  # type: ignore[no-untyped-def]
     Hs_t = -Hs_H * HkH + Hs_r
     Hs_d = Hs_H * HkH
     Hs_l = Hs_H * Hk_l + Hs_r * (1.0 + q_l) + by_M * Me2_l
-    Us, Us_s, Us_k, Us_h = slip_speed(Hs, Hk, H)
+    Us, Us_s, Us_k, Us_h = slip_speed(Hs, Hk, H, False)
     S, by_t, by_d, by_l = equilibrium_stress(
         H,
         Hk,

@@ -24,9 +24,6 @@ NEVER = 1 << 30
 LEAST_LENGTH = 1e-6
 """The two stations beside the stagnation point are kept this far from it [chords]."""
 
-STAGNATION_TRUST = 0.5
-"""Greatest |ln| by which delta* beside the stagnation point may miss Hiemenz's flow [-]."""
-
 LEAST_SPEED = 1e-10
 """Speeds are kept this far from zero where their logarithm is taken [-]."""
 
@@ -116,18 +113,19 @@ def stagnation_thickness(slope, Re):  # type: ignore[no-untyped-def]
 
 @njit
 def mend_stagnation(X, M, q, s, js, n, Re):  # type: ignore[no-untyped-def]
-    """Give stations that changed side, or that lead a side, the stagnation state."""
+    """Give the two stations that lead the sides, and any that changed side, the stagnation state.
+
+    The leading stations always have it: so near the stagnation point a small change of the speed is
+    a large one of M/q, which no linear step foresees.
+    """
     unused, slope = place_stagnation(q, s, js)
     t = stagnation_thickness(slope, Re)
     delta = STAGNATION_H * math.exp(t)
     for i in range(n):
         upper = i <= js
         wrong = (M[i] >= 0.0) if upper else (M[i] <= 0.0)
-        speed = max(abs(q[i]), LEAST_SPEED)
-        if i in (js, js + 1):
-            # so near the stagnation point a small change of the speed is a large one of M/q
-            wrong = wrong or abs(math.log(abs(M[i]) / (speed * delta))) > STAGNATION_TRUST
-        if wrong:
+        if wrong or i in (js, js + 1):
+            speed = max(abs(q[i]), LEAST_SPEED)
             M[i] = -speed * delta if upper else speed * delta
             X[i, 0] = t
             X[i, 3] = 0.0

@@ -11,6 +11,12 @@ from optim.aerodynamics.wake import outer_flow
 from optim.arrays import FloatArray, check_finite, check_shape
 
 
+LATEST_TRANSITION = 0.98
+"""Layers turn here at the latest [x/c]. A layer that is laminar so far separates ahead of the edge
+and turns at once in the near wake; left laminar to the edge, it has no solution that an iteration
+finds. Turbulent friction on the last 2 % adds less than 1 % to the least drag of a section."""
+
+
 class Outer:
     """The outer flow about one section.
 
@@ -50,12 +56,12 @@ class Outer:
     def trips(self, upper: float, lower: float) -> FloatArray:
         """Return the lengths along the contour of forced transition, given as x/c.
 
-        At 1 or beyond a side is free: its length then lies off the contour.
+        A layer turns at LATEST_TRANSITION at the latest.
         """
         x, s, nose = self.x, self.s, self.nose
-        up = float(np.interp(-upper, -x[: nose + 1], s[: nose + 1])) if upper < 1.0 else -1.0
-        low = float(np.interp(lower, x[nose:], s[nose:])) if lower < 1.0 else float(s[-1]) + 1.0
-        return np.array([up, low])
+        up = np.interp(-min(upper, LATEST_TRANSITION), -x[: nose + 1], s[: nose + 1])
+        low = np.interp(min(lower, LATEST_TRANSITION), x[nose:], s[nose:])
+        return np.array([float(up), float(low)])
 
     def angle_of_lift(self, cl: float) -> float:
         """Return the angle at which the inviscid circulation gives a lift; nan if none does."""

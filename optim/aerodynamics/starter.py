@@ -74,6 +74,10 @@ LOCAL_SLACK = 1e-2
 LARGEST_START_STRESS = math.log(0.2)
 """Largest ln sqrt(Ct) with which a station turns turbulent [-]; separated layers have less."""
 
+SEPARATION_START = 3.8
+"""Shape factor at which the march lets a laminar layer turn [-]; the one at which differential
+solutions separate is 3.5 to 3.8."""
+
 LEAST_START_SHAPE = (2.0, 1.15)
 GREATEST_START_SHAPE = (6.0, 3.0)
 """Shape factors that the march builds on, laminar and turbulent [-]; a guess needs no more."""
@@ -295,8 +299,23 @@ def sweep_side(X, M, q, js, n, side, trip, earliest, turn, frac, k, critical, Re
                 x2[3] = min(x2[3] + 0.5 * math.log(START_RATIO), LARGEST_START_STRESS)
             else:
                 kind = LAMINAR
-        stress = x2[3]
         done = close_station(kind, f, X[p], a, x2, external, own, k, Re, M2)
+        if kind == LAMINAR and j >= earliest and not (
+            done and math.exp(x2[1] - x2[0]) < SEPARATION_START
+        ):
+            # where the laminar layer separates, the march lets it turn; the iteration will move
+            # transition downstream as far as amplification allows
+            kind = TURBULENT
+            f = 0.0
+            turn[side] = j
+            frac[side] = 0.0
+            x2[:] = X[p]
+            x2[4] = X[i, 4]
+            x2[2] = math.log(max(outside, 0.05 * math.exp(X[p, 2])))
+            x2[3] = stress_at_equilibrium(x2[0], x2[1], x2[2], Re, M2)[0]
+            x2[3] = min(x2[3] + 0.5 * math.log(START_RATIO), LARGEST_START_STRESS)
+            done = close_station(kind, f, X[p], a, x2, external, own, k, Re, M2)
+        stress = X[p, 3] if f < 0.0 else LARGEST_START_STRESS
         if not done or not within(kind, math.exp(x2[1] - x2[0])):
             failed += 1
             hold_shape(X[p], a, x2, outside, kind)

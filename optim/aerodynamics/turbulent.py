@@ -45,10 +45,11 @@ LEAST_LN_RE_THETA_OF_FRICTION = 3.0
 LEAST_SHAPE_EXCESS = 0.01
 """Hk - 1 is rounded towards this where the layer becomes uniform, as at a wake's end [-]."""
 
-SLIP_KNEE = 0.90
-SLIP_ROOM = 0.08
-"""The slip speed follows its formula up to the knee and levels off at knee + room [-]; the formula
-reaches 1, where the shear stress is undefined, at H = 1."""
+WALL_SLIP = (0.75, 0.05)
+WAKE_SLIP = (0.90, 0.08)
+"""The slip speed follows its formula up to the first value and levels off at the sum [-]. The
+formula reaches 1 at H = 1, where the shear stress is undefined, and where a wall layer would be in
+a second equilibrium that no layer has; wall layers with H > 1.2 lie below 0.73."""
 
 ROUNDING = 8.0
 """Power of the rounded maximum (a^n + b^n)^(1/n) [-]."""
@@ -126,7 +127,7 @@ def energy_shape_factor(Hk, r):  # type: ignore[no-untyped-def]
 
 
 @njit
-def slip_speed(energy, Hk, H):  # type: ignore[no-untyped-def]
+def slip_speed(energy, Hk, H, wake):  # type: ignore[no-untyped-def]
     """Return Us = (H*/2)(1 - (4/3)(Hk - 1)/H), rounded towards its ceiling, and its slopes.
 
     Slopes are by H*, Hk and H.
@@ -136,10 +137,11 @@ def slip_speed(energy, Hk, H):  # type: ignore[no-untyped-def]
     by_energy = 0.5 * shape
     by_Hk = -0.5 * energy * (4.0 / 3.0) / H
     by_H = 0.5 * energy * (4.0 / 3.0) * (Hk - 1.0) / (H * H)
-    if Us > SLIP_KNEE:
-        bend = math.tanh((Us - SLIP_KNEE) / SLIP_ROOM)
+    knee, room = WAKE_SLIP if wake else WALL_SLIP
+    if Us > knee:
+        bend = math.tanh((Us - knee) / room)
         slope = 1.0 - bend * bend
-        return SLIP_KNEE + SLIP_ROOM * bend, slope * by_energy, slope * by_Hk, slope * by_H
+        return knee + room * bend, slope * by_energy, slope * by_Hk, slope * by_H
     return Us, by_energy, by_Hk, by_H
 
 
