@@ -150,8 +150,8 @@ def test_ellipse_with_the_rear_stagnation_point_at_its_end(thickness):
 
 
 def test_thin_cambered_section_tends_to_thin_aerofoil_theory(naca):
-    """NACA 24xx: alpha_0 = -2.0772 deg, cm = -0.05312, slope 2 pi (Glauert, The Elements of Aerofoil
-    and Airscrew Theory; computed from his integrals), taken to zero thickness from 2 and 4 %."""
+    """NACA 24xx: alpha_0 = -2.0772 deg, cm = -0.05312, slope 2 pi (Glauert, The Elements of
+    Aerofoil and Airscrew Theory; by his integrals), taken to zero thickness from 2 and 4 %."""
     zero, moment, slope = [], [], []
     for number in ("2402", "2404"):
         evaluator = naca(number)

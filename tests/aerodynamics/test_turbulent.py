@@ -80,8 +80,8 @@ def test_flat_plate_friction_of_karman_and_schoenherr(Re_theta, flat_plate):
 @pytest.mark.published
 def test_measured_flat_plate_at_33_m_per_s(table):
     """Wieghardt and Tillmann, NACA TM 1314; from x = 0.64 m, where the data balance in two
-    dimensions to 2 %. Friction: the table's u_tau carries about 3 % (profile fits); theta: 2 % of balance. H is
-    0.05 too low at the first stations (Re_theta 3e3 to 5e3), which is not asked for here."""
+    dimensions to 2 %. Friction: the table's u_tau carries about 3 % (profile fits); theta: 2 % of
+    balance. H is 0.05 too low at the first stations, Re_theta 3e3 to 5e3: not reproduced."""
     rows = table("wieghardt_flat_plate_33.csv")
     rows = rows[rows["x_m"] > 0.6]
     start = rows[0]

@@ -1,7 +1,7 @@
 """Sections whose potential flow is known in closed form, by conformal maps of a circle.
 
 Karman, Th. von, Trefftz, E., Z. Flugtechnik und Motorluftschiffahrt 9, 1918 (Joukowski: exponent
-2); van de Vooren, A. I., as in Katz, J., Plotkin, A., Low-Speed Aerodynamics, 2nd ed., 2001, chapter 6.
+2); van de Vooren, A. I., as in Katz, J., Plotkin, A., Low-Speed Aerodynamics, 2nd ed., 2001, ch. 6.
 Lift by Kutta and Joukowski, moment by Blasius. Both maps keep the far field: dz/dzeta -> 1.
 """
 
