@@ -72,9 +72,8 @@ PATIENCE = 5
 """Iterations after which an unsettled state no longer holds transition up: where it is held there
 need be no solution."""
 
-EDGE_ZONE = 0.02
-"""Length ahead of the edge within which a transition that left its place is left to the wake
-[chords]; amplification brings it back if it has to."""
+NEARLY_LAMINAR = 0.9
+"""Fraction beyond which an interval's end has the shape of a laminar layer [-]."""
 
 STALLED_GROWTH = 0.05
 """Growth of N over a station below which transition will not come soon [-]."""
@@ -119,7 +118,7 @@ def locate_transition(X, M, q, terms, js, n, side, trip, floor, turn, frac, why,
     count = stations_of(side, js, n)
     before = turn[side]
     held = why[side] == HELD
-    last = node_of(side, count - 1, js)
+    mixed = frac[side] < NEARLY_LAMINAR
     earliest = max(floor, min(before, count) - UPSTREAM_MOVE)
     first = node_of(side, 0, js)
     X[first, 3] = 0.0
@@ -139,9 +138,7 @@ def locate_transition(X, M, q, terms, js, n, side, trip, floor, turn, frac, why,
             turn[side] = k
             frac[side] = f
             why[side] = FORCED if f == max((trip - X[p, 4]) / step, 0.0) else FREE
-        elif (k == before and held and not settled) or (
-            k == before + 1 and X[last, 4] - X[i, 4] > EDGE_ZONE
-        ):
+        elif (k == before and held and not settled) or k == before + 1:
             lost = k > before and held and terms[p, THIRD, 0] * step < STALLED_GROWTH
             turn[side] = k
             frac[side] = 1.0
@@ -150,9 +147,8 @@ def locate_transition(X, M, q, terms, js, n, side, trip, floor, turn, frac, why,
             break
         growth_before = terms[p, THIRD, 0]
         step_before = step
-        if k >= before:
-            # a station that was turbulent goes on from the laminar one ahead of it: behind a
-            # separated layer it could not find its way past the least of H* by itself
+        if k >= before and mixed:
+            # a station that was largely turbulent goes on from the laminar one ahead of it
             X[i, 0] = X[p, 0]
             X[i, 1] = X[p, 1]
             M[i] = q[i] * math.exp(X[i, 1])
@@ -299,6 +295,7 @@ def assemble_side(X, M, q, kappa, s, js, n, side, turn, frac, why, Re, M2, terms
     J = np.zeros((EQUATIONS, COLUMNS))
     by_f = np.zeros(EQUATIONS)
     place = np.zeros(W)
+    slope_row = np.zeros(W)
     growth = np.zeros((2, W))
     sign = 1.0 if side == UPPER else -1.0
     i = node_of(side, 0, js)
@@ -306,13 +303,16 @@ def assemble_side(X, M, q, kappa, s, js, n, side, turn, frac, why, Re, M2, terms
     r = X[i, 0] - stagnation_thickness(slope, Re)
     spread = q[js + 1] - q[js]
     for j in range(W):
-        T[i, j] = -0.5 * (V[js + 1, j] - V[js, j]) / spread
+        slope_row[j] = (V[js + 1, j] - V[js, j]) / spread
+        T[i, j] = -0.5 * slope_row[j]
         S[i, j] = 0.0
-        A[i, j] = -T[i, j] - V[i, j] / q[i]
     T[i, W - 1] -= r
-    A[i, W - 1] += r
-    A[i, i] += 1.0 / M[i]
-    A[i, W - 1] += X[i, 1] - X[i, 0] - math.log(STAGNATION_H)
+    # H is that of the stagnation point, dM/M - dq/q - dt = 0; times q, which may be next to zero
+    lack = X[i, 1] - X[i, 0] - math.log(STAGNATION_H)
+    for j in range(W):
+        A[i, j] = -q[i] * T[i, j] - V[i, j]
+    A[i, i] += q[i] / M[i]
+    A[i, W - 1] += q[i] * lack
     worst = max(abs(r), abs(X[i, 1] - X[i, 0] - math.log(STAGNATION_H)))
     step_before = 0.0
     free = why[side] == FREE and turn[side] < NEVER
@@ -338,6 +338,15 @@ def assemble_side(X, M, q, kappa, s, js, n, side, turn, frac, why, Re, M2, terms
             plain_interval(kind, X[p], X[i], terms[p], terms[i], R, J)
         if laminar:
             J[2, 8] = 1.0
+        if k == 1:
+            # the leading station has the stagnation point's H and a speed in step with its length
+            for row in range(EQUATIONS):
+                J[row, 0] += J[row, 1]
+                J[row, 4] += J[row, 2] / X[p, 4]
+                by_f[row] = J[row, 2]
+                J[row, 1] = 0.0
+                J[row, 2] = 0.0
+            place[:] = slope_row
         eliminate_interval(R, J, by_f, place, p, i, sign, T, S, V, A, M, q, X, kappa, nt)
         if laminar and free:
             march_growth(S, X, terms, growth, i, p, step_before)

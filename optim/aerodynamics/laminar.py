@@ -26,11 +26,12 @@ LEAST_H = 2.1
 GREATEST_H = 20.0
 """Greatest shape factor of the fits [-]."""
 
-STAGNATION_H = 2.216229
-"""Shape factor of Hiemenz's stagnation flow (beta = 1), from the numerical solution [-]."""
-
-STAGNATION_THETA = 0.292344
-"""theta sqrt(ue'/nu) of Hiemenz's stagnation flow, from the numerical solution [-]."""
+STAGNATION_H = 2.2144212265075356
+STAGNATION_THETA = 0.29261227639932597
+"""Shape factor and theta sqrt(Re due/ds) of the stagnation flow of these fits [-]: the similar
+solution of their equations, (d - l)(H + 2) = (1 - H) l and theta^2 = l/(H + 2). Hiemenz's exact
+values are 2.216229 and 0.292344, 0.1 % away; exact ones would leave a residual that grows with
+the logarithm of the length from the stagnation point."""
 
 ENERGY_FIT = np.array(
     [0.043785075, 1.3906924, -1.0746607, 5.8359145, -10.885952, 9.6955846, -3.351044]

@@ -21,7 +21,7 @@ UPPER, LOWER = 0, 1
 NEVER = 1 << 30
 """Station number of a transition that does not happen."""
 
-LEAST_LENGTH = 1e-6
+LEAST_LENGTH = 1e-7
 """The two stations beside the stagnation point are kept this far from it [chords]."""
 
 LEAST_SPEED = 1e-10
