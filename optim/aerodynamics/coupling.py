@@ -132,7 +132,7 @@ def locate_transition(X, M, q, terms, js, n, side, trip, floor, turn, frac, why,
         p = node_of(side, k - 1, js)
         step = X[i, 4] - X[p, 4]
         N, f = turning_fraction(
-            X, terms[p], growth_before, i, p, step_before, trip, critical
+            X, terms[p], growth_before, i, p, step_before, trip, critical, Re
         )
         if f >= 0.0 and k >= earliest:
             turn[side] = k
@@ -348,6 +348,8 @@ def assemble_side(X, M, q, kappa, s, js, n, side, turn, frac, why, Re, M2, terms
                 J[row, 2] = 0.0
             place[:] = slope_row
         eliminate_interval(R, J, by_f, place, p, i, sign, T, S, V, A, M, q, X, kappa, nt)
+        if k == 1:
+            place[:] = 0.0
         if laminar and free:
             march_growth(S, X, terms, growth, i, p, step_before)
         step_before = X[i, 4] - X[p, 4]
@@ -623,7 +625,7 @@ def newton(
             for i in range(n):
                 add_row(A[nt], by_q[i], V[i])
             A[nt, nt] += by_alpha
-            A[nt, W - 1] = cl - wanted
+            A[nt, W - 1] += cl - wanted
             residual = max(residual, abs(cl - wanted))
         tau = (s0 - s[js]) / (s[js + 1] - s[js])
         for j in range(W):

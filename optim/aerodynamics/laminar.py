@@ -26,42 +26,42 @@ LEAST_H = 2.1
 GREATEST_H = 20.0
 """Greatest shape factor of the fits [-]."""
 
-STAGNATION_H = 2.2144212265075356
-STAGNATION_THETA = 0.29261227639932597
+STAGNATION_H = 2.2157902713775726
+STAGNATION_THETA = 0.29244198724542037
 """Shape factor and theta sqrt(Re due/ds) of the stagnation flow of these fits [-]: the similar
 solution of their equations, (d - l)(H + 2) = (1 - H) l and theta^2 = l/(H + 2). Hiemenz's exact
-values are 2.216229 and 0.292344, 0.1 % away; exact ones would leave a residual that grows with
+values are 2.216229 and 0.292344, 0.03 % away; exact ones would leave a residual that grows with
 the logarithm of the length from the stagnation point."""
 
 ENERGY_FIT = np.array(
-    [0.043785075, 1.3906924, -1.0746607, 5.8359145, -10.885952, 9.6955846, -3.351044]
+    [0.043820714, 1.3894962, -1.0605989, 5.7620621, -10.700686, 9.4795972, -3.2573178]
 )
 """H*/(H - 1) in ascending powers of 1/(H - 1); within 0.06 % of Falkner-Skan."""
 
 FRICTION_FIT = np.array(
     [
-        0.0096902675,
-        -1.1008858,
-        4.2684952,
-        -0.69668391,
-        -14.386294,
-        28.486354,
-        -23.408982,
-        7.322458,
+        0.010585061,
+        -1.1326933,
+        4.6702808,
+        -3.0910769,
+        -6.9497157,
+        16.182512,
+        -13.166747,
+        3.957246,
     ]
 )
-"""l = Re_theta cf/2 in ascending powers of 1/(H - 1); within 5e-4 of Falkner-Skan."""
+"""l = Re_theta cf/2 in ascending powers of 1/(H - 1); within 1.1e-4 of Falkner-Skan."""
 
 DISSIPATION_FIT = np.array(
     [
-        -0.025993142,
-        2.3308361,
-        -8.1912688,
-        9.4926975,
-        9.7826938,
-        -36.175308,
-        34.443952,
-        -11.384255,
+        -0.026150154,
+        2.3366997,
+        -8.2683396,
+        9.9640227,
+        8.2902326,
+        -33.660463,
+        32.309093,
+        -10.667607,
     ]
 )
 """d = 2 CD Re_theta/H* in ascending powers of 1/(H - 1); within 0.19 % of Falkner-Skan."""

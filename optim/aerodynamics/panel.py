@@ -29,10 +29,6 @@ import numpy as np
 
 from optim.aerodynamics.kernels import njit
 
-SHARP_EDGE = 1e-6
-"""Below this gap [chords] the two edge nodes are one point: their equations would coincide."""
-
-
 @njit
 def panel_frames(x, y, tx, ty, length):  # type: ignore[no-untyped-def]
     """Fill unit tangents and lengths of the panels between consecutive nodes."""
@@ -171,8 +167,7 @@ def close_edge(x, y, tx, ty, lhs):  # type: ignore[no-untyped-def]
 
     With q_e = (q[-1] - q[0])/2 the speed at the edge, the base panel from the lower to the upper
     corner carries the source q_e |sin phi| and the vortex q_e cos phi, phi being its angle with
-    the bisector. A sharp edge has no base panel and one psi equation too many: its place takes
-    the statement that the mean of both speeds runs straight into the edge.
+    the bisector. The edge must be open, by however little (outer.py sees to it).
     """
     n = len(x)
     two_pi = 2.0 * math.pi
@@ -181,13 +176,6 @@ def close_edge(x, y, tx, ty, lhs):  # type: ignore[no-untyped-def]
     gap = math.sqrt(dx * dx + dy * dy)
     lhs[n, 0] = 1.0
     lhs[n, n - 1] = 1.0
-    if gap < SHARP_EDGE:
-        for j in range(n + 1):
-            lhs[n - 1, j] = 0.0
-        for k, weight in enumerate((1.0, -2.0, 1.0)):
-            lhs[n - 1, k] += weight
-            lhs[n - 1, n - 1 - k] -= weight
-        return
     bx = -tx[0] + tx[n - 2]
     by = -ty[0] + ty[n - 2]
     norm = math.sqrt(bx * bx + by * by)
@@ -226,7 +214,4 @@ def stream_at_rest(x, y):  # type: ignore[no-untyped-def]
     for i in range(n):
         right[i, 0] = -y[i]
         right[i, 1] = x[i]
-    if math.hypot(x[0] - x[n - 1], y[0] - y[n - 1]) < SHARP_EDGE:
-        right[n - 1, 0] = 0.0
-        right[n - 1, 1] = 0.0
     return right

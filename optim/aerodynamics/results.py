@@ -17,6 +17,7 @@ from optim.aerodynamics.forces import lift_force, squire_young
 from optim.aerodynamics.interval import FORCED
 from optim.aerodynamics.kernels import njit
 from optim.aerodynamics.layer import FRICTION, SLOPES, TERMS
+from optim.aerodynamics.layout import NEVER
 from optim.aerodynamics.operating_point import (
     LEAST_LIFT_FOR_CENTRE_OF_PRESSURE,
     QUARTER_CHORD,
@@ -24,6 +25,7 @@ from optim.aerodynamics.operating_point import (
     SideState,
     Surface,
 )
+from optim.aerodynamics.outer import LATEST_TRANSITION
 from optim.aerodynamics.starter import station_terms
 from optim.arrays import FloatArray, frozen
 from optim.outcomes import Outcome
@@ -125,6 +127,10 @@ def build_flow(
     up = slice(js, None, -1)
     low = slice(js + 1, n)
     forced = state.why == FORCED
+    unforced = (point.trip_upper > LATEST_TRANSITION, point.trip_lower > LATEST_TRANSITION)
+    turn = [
+        NEVER if forced[side] and unforced[side] else int(state.turn[side]) for side in range(2)
+    ]
     peak = int(np.argmin(cp))
     s0 = outer.s[js] - q[js] * (outer.s[js + 1] - outer.s[js]) / (q[js + 1] - q[js])
     return replace(
@@ -141,10 +147,10 @@ def build_flow(
         cp_min=float(cp[peak]),
         cp_min_x=float(outer.x[peak]),
         upper=_side(
-            outer.x[up], H[up], cf[up], int(state.turn[0]), float(state.frac[0]), bool(forced[0])
+            outer.x[up], H[up], cf[up], turn[0], float(state.frac[0]), bool(forced[0])
         ),
         lower=_side(
-            outer.x[low], H[low], cf[low], int(state.turn[1]), float(state.frac[1]), bool(forced[1])
+            outer.x[low], H[low], cf[low], turn[1], float(state.frac[1]), bool(forced[1])
         ),
         surface=_surface(outer, state, cp, friction, s0, mach),
     )

@@ -74,6 +74,10 @@ LOCAL_SLACK = 1e-2
 LARGEST_START_STRESS = math.log(0.2)
 """Largest ln sqrt(Ct) with which a station turns turbulent [-]; separated layers have less."""
 
+LEAST_TURBULENT = 100.0
+"""Re_theta below which a trip leaves a layer laminar [-]. Relaminarised and tripped layers are
+found laminar below some 100 to 300 (Preston, J. Fluid Mech. 3, 1958; from memory)."""
+
 SEPARATION_START = 3.8
 """Shape factor at which the march lets a laminar layer turn [-]; the one at which differential
 solutions separate is 3.5 to 3.8."""
@@ -241,17 +245,19 @@ def straight_mass(X, M, sign, i, p, j):  # type: ignore[no-untyped-def]
 
 
 @njit
-def turning_fraction(X, a, before, i, p, step_before, trip, critical):  # type: ignore[no-untyped-def]
+def turning_fraction(X, a, before, i, p, step_before, trip, critical, Re):  # type: ignore[no-untyped-def]
     """Return N at the end of an interval and the fraction at which it turns; -1 if it does not.
 
-    `a` are the terms of the upstream station, `before` is the growth of the one ahead of it.
+    `a` are the terms of the upstream station, `before` is the growth of the one ahead of it. A trip
+    acts from where the layer is thick enough to be turbulent.
     """
     step = X[i, 4] - X[p, 4]
     ratio = step / step_before if step_before > 0.0 else 0.0
     rise = growth_rise(a[THIRD, 0], before, ratio)[0]
     f = fraction_at(X[p, 3], a[THIRD, 0], rise, step, critical)
     fixed = max((trip - X[p, 4]) / step, 0.0)
-    if fixed < 1.0 and (f < 0.0 or fixed < f):
+    thick = Re * math.exp(X[p, 0] + X[p, 2]) > LEAST_TURBULENT
+    if thick and fixed < 1.0 and (f < 0.0 or fixed < f):
         f = fixed
     return amplified(X[p, 3], a[THIRD, 0], rise, step, 1.0), f
 
@@ -288,7 +294,9 @@ def sweep_side(X, M, q, js, n, side, trip, earliest, turn, frac, k, critical, Re
         N = 0.0
         kind = TURBULENT
         if turn[side] == NEVER:
-            N, f = turning_fraction(X, a, growth_before, i, p, step_before, trip, critical)
+            N, f = turning_fraction(
+                X, a, growth_before, i, p, step_before, trip, critical, Re
+            )
             growth_before = a[THIRD, 0]
             step_before = step
             N = min(N, critical)

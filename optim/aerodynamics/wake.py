@@ -186,8 +186,6 @@ def base_rows(x, y, tx, ty, xw, yw, stream, speeds):  # type: ignore[no-untyped-
     dx = x[0] - x[n - 1]
     dy = y[0] - y[n - 1]
     gap = math.sqrt(dx * dx + dy * dy)
-    if gap < 1e-6:
-        return
     bx = -tx[0] + tx[n - 2]
     by = -ty[0] + ty[n - 2]
     norm = math.sqrt(bx * bx + by * by)
@@ -265,8 +263,6 @@ def outer_flow(x, y):  # type: ignore[no-untyped-def]
     both = np.zeros((n + 1, 2 + n + w))
     both[:, :2] = right
     both[:n, 2:] = -blown
-    if math.hypot(x[0] - x[n - 1], y[0] - y[n - 1]) < 1e-6:
-        both[n - 1, 2:] = 0.0
     solved = np.linalg.solve(lhs, both)
     total = np.empty((n + w, 2 + n + w))
     total[:n] = solved[:n]
