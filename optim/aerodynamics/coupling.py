@@ -95,7 +95,7 @@ LARGEST_STEP = 0.5
 """Largest change of the logarithms of theta, delta* and sqrt(Ct) in one iteration."""
 
 CAUTION = 12.0
-"""Iterations after which the largest step is halved [-]: about the least of H* Newton steps leap
+"""Iterations since transition moved after which the largest step is halved [-]: about the least of H* Newton steps leap
 from one side to the other, and only shorter ones settle."""
 
 LARGEST_SPEED_STEP = 0.4
@@ -106,7 +106,9 @@ LARGEST_TURN = math.radians(3.0)
 
 
 @njit
-def locate_transition(X, M, q, terms, js, n, side, trip, floor, turn, frac, why, settled, critical, Re, M2):  # type: ignore[no-untyped-def]
+def locate_transition(
+    X, M, q, terms, js, n, side, trip, floor, turn, frac, why, settled, critical, Re, M2
+):  # type: ignore[no-untyped-def]
     """March amplification along the laminar stations of a side, filling their terms.
 
     N depends on stations upstream alone. Where it turns critical ahead of the present place, or a
@@ -131,9 +133,7 @@ def locate_transition(X, M, q, terms, js, n, side, trip, floor, turn, frac, why,
         i = node_of(side, k, js)
         p = node_of(side, k - 1, js)
         step = X[i, 4] - X[p, 4]
-        N, f = turning_fraction(
-            X, terms[p], growth_before, i, p, step_before, trip, critical, Re
-        )
+        N, f = turning_fraction(X, terms[p], growth_before, i, p, step_before, trip, critical, Re)
         if f >= 0.0 and k >= earliest:
             turn[side] = k
             frac[side] = f
@@ -326,9 +326,7 @@ def assemble_side(X, M, q, kappa, s, js, n, side, turn, frac, why, Re, M2, terms
             growth_row(growth[0], terms[p, THIRD], T, V, M, q, kappa, p)
         if k == turn[side]:
             station_terms(TURBULENT, X[i], Re, M2, terms[i])
-            transition_interval(
-                X[p], X[i], terms[p], terms[i], frac[side], Re, M2, R, J, by_f
-            )
+            transition_interval(X[p], X[i], terms[p], terms[i], frac[side], Re, M2, R, J, by_f)
             if free:
                 place_row(place, X, terms, growth, i, p, step_before, frac[side], S)
         else:
@@ -564,6 +562,8 @@ def newton(
     marches = np.zeros(2, np.int64)
     floor = np.ones(2, np.int64)
     waited = 0
+    since = 0
+    last_turn = turn.copy()
     z = np.zeros(W)
     z[W - 1] = 1.0
     residual = 1e9
@@ -586,29 +586,44 @@ def newton(
         for side in range(2):
             trip = s0 - trips[0] if side == UPPER else trips[1] - s0
             lost = locate_transition(
-                X, M, q, terms, js, n, side, trip, floor[side], turn, frac, why, settled, critical, Re, M2
+                X,
+                M,
+                q,
+                terms,
+                js,
+                n,
+                side,
+                trip,
+                floor[side],
+                turn,
+                frac,
+                why,
+                settled,
+                critical,
+                Re,
+                M2,
             )
             if lost and marches[side] < MARCHES:
                 # too far to follow station by station: march the side anew, past the place lost
                 marches[side] += 1
                 floor[side] = turn[side]
                 settled = False
-                sweep_side(
-                    X, M, q, js, n, side, trip, floor[side], turn, frac, k, critical, Re, M2
-                )
+                sweep_side(X, M, q, js, n, side, trip, floor[side], turn, frac, k, critical, Re, M2)
                 locate_transition(
                     X, M, q, terms, js, n, side, trip, floor[side], turn, frac, why, settled,
                     critical, Re, M2,
                 )  # fmt: skip
+        since += 1
+        if turn[0] != last_turn[0] or turn[1] != last_turn[1]:
+            since = 0
+            last_turn[:] = turn
         mismatch = outer_rows(V, stream, influence, alpha, M, q)
         residual = assemble_side(
             X, M, q, kappa, s, js, n, 0, turn, frac, why, Re, M2, terms, T, S, V, A
         )
         residual = max(
             residual,
-            assemble_side(
-                X, M, q, kappa, s, js, n, 1, turn, frac, why, Re, M2, terms, T, S, V, A
-            ),
+            assemble_side(X, M, q, kappa, s, js, n, 1, turn, frac, why, Re, M2, terms, T, S, V, A),
         )
         residual = max(
             residual,
@@ -637,13 +652,18 @@ def newton(
         history[iteration, 5] = frac[0]
         history[iteration, 6] = frac[1]
         history[iteration, 7] = js
-        if residual < tolerance and change < math.sqrt(tolerance) and why[0] != HELD and why[1] != HELD:
+        if (
+            residual < tolerance
+            and change < math.sqrt(tolerance)
+            and why[0] != HELD
+            and why[1] != HELD
+        ):
             return True, js, alpha, iteration, residual
         if not (residual < 1e8) or not np.all(np.isfinite(A)):
             return False, js, alpha, iteration, residual
         z[: nt + 2] = np.linalg.solve(A[:, : nt + 2], -A[:, W - 1])
         factor, change = limit_step(
-            X, M, q, kappa, T, S, V, z, js, n, turn, LARGEST_STEP / (1.0 + iteration / CAUTION)
+            X, M, q, kappa, T, S, V, z, js, n, turn, LARGEST_STEP / (1.0 + since / CAUTION)
         )
         if not (change < 1e12):
             return False, js, alpha, iteration, residual

@@ -169,33 +169,63 @@ class SectionEvaluator:
         return build_flow(self.outer, point, attempt.state, spent, attempt.residual), attempt.state
 
     def _attempt(self, point: OperatingPoint, alpha: float, near: State | None) -> Attempt:
-        """March a first state and iterate."""
-        self.solves += 1
+        """Iterate from a neighbouring state as it stands, else from a march on its displacement.
+
+        Without a neighbour the march goes along the inviscid flow.
+        """
+        spent = 0
+        for first in (self._carried, self._marched) if near is not None else (self._marched,):
+            state = first(point, alpha, near)
+            if state is None:
+                continue
+            attempt = self._iterate(point, state)
+            spent += attempt.iterations
+            if attempt.state is not None:
+                return replace(attempt, iterations=spent)
+        return Attempt(None, spent, math.inf if state is None else attempt.residual)
+
+    def _carried(self, point: OperatingPoint, alpha: float, near: State | None) -> State | None:
+        """Return a neighbour's state at another angle; None if the Reynolds number differs."""
+        if near is None or near.reynolds != point.reynolds:
+            return None
+        return State(
+            near.X.copy(), near.M.copy(), near.q.copy(), near.js, alpha,
+            near.turn.copy(), near.frac.copy(), near.why.copy(), point.reynolds,
+        )  # fmt: skip
+
+    def _marched(self, point: OperatingPoint, alpha: float, near: State | None) -> State | None:
+        """Return the state of a march; None if the flow has no stagnation point on the contour."""
         o = self.outer
-        total = o.total
-        X = np.zeros((total, 5))
-        M = np.zeros(total) if near is None else near.M.copy()
-        q = np.zeros(total)
+        X = np.zeros((o.total, 5))
+        M = np.zeros(o.total) if near is None else near.M.copy()
+        q = np.zeros(o.total)
         turn = np.array([NEVER, NEVER])
         frac = np.zeros(2)
-        why = np.zeros(2, dtype=np.int64)
-        trips = o.trips(point.trip_upper, point.trip_lower)
-        k = tsien_parameter(point.mach)
         js, _ = start(
-            X, M, q, o.stream, o.influence, o.s, o.sw, alpha, o.n, o.gap, trips, turn, frac,
-            k, point.n_factor, point.reynolds, point.mach**2, near is not None,
+            X, M, q, o.stream, o.influence, o.s, o.sw, alpha, o.n, o.gap,
+            o.trips(point.trip_upper, point.trip_lower), turn, frac,
+            tsien_parameter(point.mach), point.n_factor, point.reynolds, point.mach**2,
+            near is not None,
         )  # fmt: skip
         if js < 0:
-            return Attempt(None, 0, math.inf)
-        wanted = math.nan if point.cl is None else point.cl
-        done, js, alpha, iterations, residual = newton(
+            return None
+        why = np.zeros(2, dtype=np.int64)
+        return State(X, M, q, js, alpha, turn, frac, why, point.reynolds)
+
+    def _iterate(self, point: OperatingPoint, first: State) -> Attempt:
+        """Iterate from a first state, which is overwritten."""
+        self.solves += 1
+        o = self.outer
+        done, first.js, first.alpha, iterations, residual = newton(
             o.x, o.y, o.s, o.sw, o.stream, o.influence, self._rows, o.gap,
-            X, M, q, np.ones(total), js, alpha, turn, frac, why, trips, wanted,
-            point.n_factor, point.reynolds, point.mach, k, BUDGET, TOLERANCE,
-            np.zeros((BUDGET + 1, 8)),
+            first.X, first.M, first.q, np.ones(o.total), first.js, first.alpha,
+            first.turn, first.frac, first.why,
+            o.trips(point.trip_upper, point.trip_lower),
+            math.nan if point.cl is None else point.cl,
+            point.n_factor, point.reynolds, point.mach, tsien_parameter(point.mach),
+            BUDGET, TOLERANCE, np.zeros((BUDGET + 1, 8)),
         )  # fmt: skip
-        state = State(X, M, q, js, alpha, turn, frac, why, point.reynolds) if done else None
-        return Attempt(state, iterations, residual)
+        return Attempt(first if done else None, iterations, residual)
 
     def _continue(self, point: OperatingPoint, alpha: float) -> Attempt:
         """Walk from an easier angle to the one wanted, halving the steps that fail.
@@ -288,14 +318,10 @@ def in_range(point: OperatingPoint) -> bool:
 
 def _is_near(state: State, alpha: float, reynolds: float) -> bool:
     ratio = reynolds / state.reynolds
-    return (
-        abs(alpha - state.alpha) <= NEAR_ANGLE and 1.0 / NEAR_REYNOLDS <= ratio <= NEAR_REYNOLDS
-    )
+    return abs(alpha - state.alpha) <= NEAR_ANGLE and 1.0 / NEAR_REYNOLDS <= ratio <= NEAR_REYNOLDS
 
 
-def inviscid_flow(
-    outer: Outer, bare: SectionFlow, q: FloatArray, cp: FloatArray
-) -> SectionFlow:
+def inviscid_flow(outer: Outer, bare: SectionFlow, q: FloatArray, cp: FloatArray) -> SectionFlow:
     """Fill what an inviscid flow has: lift, moment, pressures and the stagnation point."""
     mach = bare.point.mach
     cl, _, cm, cn = lift_force(outer.x, outer.y, q, bare.alpha, mach, np.empty(outer.n))

@@ -29,6 +29,7 @@ import numpy as np
 
 from optim.aerodynamics.kernels import njit
 
+
 @njit
 def panel_frames(x, y, tx, ty, length):  # type: ignore[no-untyped-def]
     """Fill unit tangents and lengths of the panels between consecutive nodes."""

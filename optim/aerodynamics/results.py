@@ -62,7 +62,12 @@ def _crossing(x: FloatArray, values: FloatArray, k: int) -> float:
 
 
 def _side(
-    x: FloatArray, H: FloatArray, cf: FloatArray, turn: int, frac: float, forced: bool  # noqa: FBT001
+    x: FloatArray,
+    H: FloatArray,
+    cf: FloatArray,
+    turn: int,
+    frac: float,
+    forced: bool,  # noqa: FBT001
 ) -> SideState:
     """Read one side, its stations in the direction of the flow.
 
@@ -108,9 +113,7 @@ def build_flow(
     M2 = mach * mach
     cp = compressed_pressure(1.0 - q * q, mach)[0]
     panels = n - 1
-    bare = SectionFlow(
-        point, Outcome.CONVERGED, panels, iterations=iterations, residual=residual
-    )
+    bare = SectionFlow(point, Outcome.CONVERGED, panels, iterations=iterations, residual=residual)
     if cp.min() <= critical_pressure(mach):
         return replace(bare, outcome=Outcome.LOCAL_SONIC, alpha=state.alpha)
     cl, _, cm, cn = lift_force(outer.x, outer.y, q, state.alpha, mach, np.empty(n))
@@ -146,12 +149,8 @@ def build_flow(
         stagnation_side="upper" if s0 < outer.s_nose else "lower",
         cp_min=float(cp[peak]),
         cp_min_x=float(outer.x[peak]),
-        upper=_side(
-            outer.x[up], H[up], cf[up], turn[0], float(state.frac[0]), bool(forced[0])
-        ),
-        lower=_side(
-            outer.x[low], H[low], cf[low], turn[1], float(state.frac[1]), bool(forced[1])
-        ),
+        upper=_side(outer.x[up], H[up], cf[up], turn[0], float(state.frac[0]), bool(forced[0])),
+        lower=_side(outer.x[low], H[low], cf[low], turn[1], float(state.frac[1]), bool(forced[1])),
         surface=_surface(outer, state, cp, friction, s0, mach),
     )
 
@@ -205,5 +204,3 @@ def _surface(
         skin_friction=frozen(np.concatenate([friction, np.zeros(wake)])[order]),
         n=frozen(amplification),
     )
-
-

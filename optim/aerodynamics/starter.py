@@ -294,9 +294,7 @@ def sweep_side(X, M, q, js, n, side, trip, earliest, turn, frac, k, critical, Re
         N = 0.0
         kind = TURBULENT
         if turn[side] == NEVER:
-            N, f = turning_fraction(
-                X, a, growth_before, i, p, step_before, trip, critical, Re
-            )
+            N, f = turning_fraction(X, a, growth_before, i, p, step_before, trip, critical, Re)
             growth_before = a[THIRD, 0]
             step_before = step
             N = min(N, critical)
@@ -308,8 +306,10 @@ def sweep_side(X, M, q, js, n, side, trip, earliest, turn, frac, k, critical, Re
             else:
                 kind = LAMINAR
         done = close_station(kind, f, X[p], a, x2, external, own, k, Re, M2)
-        if kind == LAMINAR and j >= earliest and not (
-            done and math.exp(x2[1] - x2[0]) < SEPARATION_START
+        if (
+            kind == LAMINAR
+            and j >= earliest
+            and not (done and math.exp(x2[1] - x2[0]) < SEPARATION_START)
         ):
             # where the laminar layer separates, the march lets it turn; the iteration will move
             # transition downstream as far as amplification allows
@@ -369,9 +369,7 @@ def sweep_wake(X, M, q, n, gap, turn, k, Re, M2):  # type: ignore[no-untyped-def
         x2[:] = X[i - 1]
         x2[4] = X[i, 4]
         x2[2] = math.log(max(total, 0.05))
-        done = close_station(
-            WAKE, -1.0, X[i - 1], a, x2, total - own * straight, own, k, Re, M2
-        )
+        done = close_station(WAKE, -1.0, X[i - 1], a, x2, total - own * straight, own, k, Re, M2)
         if not done or not within(WAKE, math.exp(x2[1] - x2[0])):
             failed += 1
             hold_shape(X[i - 1], a, x2, total, WAKE)
@@ -413,7 +411,9 @@ def soften_edge(q, s, sw, n):  # type: ignore[no-untyped-def]
 
 
 @njit
-def start(X, M, q, stream, influence, s, sw, alpha, n, gap, trips, turn, frac, k, critical, Re, M2, warm):  # type: ignore[no-untyped-def]
+def start(
+    X, M, q, stream, influence, s, sw, alpha, n, gap, trips, turn, frac, k, critical, Re, M2, warm
+):  # type: ignore[no-untyped-def]
     """Fill a first state for an angle of attack; return the node before stagnation and failures.
 
     The march runs on the inviscid speeds; if `warm`, on the speeds that the mass defect of a

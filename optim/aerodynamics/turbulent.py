@@ -22,8 +22,9 @@ import math
 from optim.aerodynamics.kernels import njit
 
 LAG_CONSTANT = 5.6
-"""K of (delta/Ct) dCt/dxi = K (sqrt(Ct_eq) - sqrt(Ct)) [-]; 4.2 in the paper of 1987, 5.6 in its
-authors' later ones (METHODS from memory); chosen by the drag of NACA 0012 in DEVELOPERS.md."""
+"""K of (delta/Ct) dCt/dxi = K (sqrt(Ct_eq) - sqrt(Ct)) [-]: 4.2 in the paper of 1987, 5.6 in its
+authors' later ones (from memory). Attached drag is the same with both; 4.2 lowers cl_max by 5 %,
+nearer to measurements, but its iteration fails more often with bubbles (DEVELOPERS.md)."""
 
 EQUILIBRIUM_CONSTANT = 0.015
 """Of the equilibrium shear stress [-]: 1/(2 A^2 B) of the locus G = A sqrt(1 + B beta) with
@@ -85,9 +86,7 @@ def skin_friction(Hk, r, M2):  # type: ignore[no-untyped-def]
     main = 0.3 * math.exp(-1.33 * Hk + exponent * math.log(log10))
     bend = math.tanh(4.0 - Hk / 0.875)
     cf = (main + 0.00011 * (bend - 1.0)) / Fc
-    cf_H = (
-        main * (-1.33 - 0.31 * math.log(log10)) - 0.00011 * (1.0 - bend * bend) / 0.875
-    ) / Fc
+    cf_H = (main * (-1.33 - 0.31 * math.log(log10)) - 0.00011 * (1.0 - bend * bend) / 0.875) / Fc
     main_g = main * exponent / g
     return cf, cf_H, main_g * g_r / Fc, main_g * g_M / Fc - cf * Fc_M / Fc
 
