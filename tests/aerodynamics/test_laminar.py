@@ -19,7 +19,8 @@ from optim.aerodynamics.laminar import (
     laminar_closure,
 )
 
-ATTACHED = (2.5911, 2.4, 2.3, 2.216229, 2.15, 2.12, 2.102)
+HIEMENZ_H = 2.216229
+ATTACHED = (2.5911, 2.4, 2.3, HIEMENZ_H, 2.15, 2.12, 2.102)
 SEPARATED = (2.5911, 2.8, 3.2, 3.6, 4.03, 4.6, 5.5, 6.5, 8.0, 10.0, 12.0, 14.5, 17.0, 19.95)
 """Shape factors along the two arms from Blasius' layer; each layer starts from the one before."""
 
@@ -87,11 +88,18 @@ def test_the_solutions_are_the_published_ones(layers):
     blasius = next(x for x in layers if x.H == 2.5911)
     assert blasius.beta == pytest.approx(0.0, abs=2e-6)
     assert blasius.theta == pytest.approx(0.469600, abs=2e-6)
-    hiemenz = next(x for x in layers if x.H == STAGNATION_H)
+    hiemenz = next(x for x in layers if x.H == HIEMENZ_H)
     assert hiemenz.beta == pytest.approx(1.0, abs=1e-4)
     assert hiemenz.friction / hiemenz.theta == pytest.approx(1.232588, abs=1e-4)
-    assert hiemenz.theta == pytest.approx(STAGNATION_THETA, abs=2e-6)
+    assert hiemenz.theta == pytest.approx(0.292344, abs=2e-6)
     assert min(x.beta for x in layers) == pytest.approx(-0.198838, abs=1e-4)
+
+
+def test_stagnation_state_of_the_closure(layers):
+    """The state that starts a side: Hiemenz's flow, to the accuracy of the fits."""
+    hiemenz = next(x for x in layers if x.H == HIEMENZ_H)
+    state = (STAGNATION_H, STAGNATION_THETA)
+    assert state == pytest.approx((hiemenz.H, hiemenz.theta), rel=2e-3)
 
 
 def test_closure_against_every_layer(layers):
