@@ -1,4 +1,4 @@
-"""The benchmarks answer with the keys that scripts lean on; what they measure is for a quiet hour."""
+"""The benchmarks answer with the keys that scripts lean on; the slow ones hold their figures."""
 
 import json
 import subprocess
