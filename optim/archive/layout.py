@@ -218,7 +218,7 @@ RECORD: tuple[Dataset, ...] = (
     ),
     Dataset(
         "/evaluations/points", "points", "i8", (EVALUATION,),
-        "-", "Coupled points solved for this design.",
+        "-", "Coupled solutions attempted for this design.",
     ),
     Dataset(
         "/evaluations/iterations", "iterations", "i8", (EVALUATION,),

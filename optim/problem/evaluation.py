@@ -43,7 +43,8 @@ class Evaluation:
     search_constraints : (n_constraints + 1,) array
         Kept at or below zero, always finite; the last one is how incomplete the evaluation is.
     points : int
-        Coupled flow solutions that were paid for.
+        Coupled solutions attempted: more than conditions, for a peak takes many and a difficult
+        condition several.
     iterations : int
         Newton iterations of all of them.
     seconds : float

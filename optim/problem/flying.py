@@ -19,6 +19,10 @@ from optim.problem.conditions import Condition
 class FlowSolver(Protocol):
     """What is asked of the evaluator of one section."""
 
+    @property
+    def solves(self) -> int:
+        """Coupled solutions attempted so far."""
+
     def flows(self, points: Sequence[OperatingPoint]) -> Sequence[SectionFlow]:
         """Return the flows in order, each started from earlier ones of the same list."""
 

@@ -318,8 +318,9 @@ class Problem:
             return _Attempt(
                 measures, not_flown(self.conditions, Outcome.NOT_EVALUATED, self.panels)
             )
-        flows = fly(self.solver(panel_nodes(section, self.panels)), self.conditions)
-        return _Attempt(measures, flows, points=len(flows))
+        solver = self.solver(panel_nodes(section, self.panels))
+        flows = fly(solver, self.conditions)
+        return _Attempt(measures, flows, points=solver.solves)
 
     def _shape_violation(self, measures: dict[str, float]) -> float:
         """Sum of the violations of the limits that need no flow."""

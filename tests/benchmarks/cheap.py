@@ -4,6 +4,7 @@ In a module of its own, because a spawned worker has to be able to import what b
 """
 
 from dataclasses import dataclass
+from typing import ClassVar
 
 import numpy as np
 
@@ -39,6 +40,7 @@ class Free:
     """Closed forms of thickness and camber in place of flows."""
 
     nodes: np.ndarray
+    solves: ClassVar[int] = 2
 
     def flows(self, points):
         thickness, camber = np.ptp(self.nodes[:, 1]), self.nodes[:, 1].mean()

@@ -14,6 +14,9 @@ from optim.study.load import parse_study
 
 PANELS = 160
 
+SOLVES_OF_A_PEAK = 9
+"""What the stand-in says that a peak costs."""
+
 STUDY = """\
 study: tollgate-6-wing
 section:
@@ -54,6 +57,7 @@ class ThinSection:
         self.thickness = float(np.max(upper - lower))
         self.camber = float(np.max(upper + lower)) / 2.0
         self.asked = []
+        self.solves = 0
 
     @property
     def peak(self):
@@ -61,10 +65,12 @@ class ThinSection:
 
     def flows(self, points):
         self.asked.append(("flows", tuple(points)))
+        self.solves += len(points)
         return [self._flow(point) for point in points]
 
     def maximum_lift(self, point):
         self.asked.append(("maximum_lift", point))
+        self.solves += SOLVES_OF_A_PEAK
         return self._converged(point, self.peak)
 
     def _flow(self, point):

@@ -79,6 +79,7 @@ def test_objectives_follow_from_the_recorded_quantities(make_problem):
     assert found.objectives[0] == pytest.approx(1.0 / drag_per_lift, rel=1e-14)
     assert found.objectives[1] == survey[column(problem, "nose_down_moment")]
     assert found.search_objectives.tolist() == [-found.objectives[0], found.objectives[1]]
+    assert found.points == 2 + 9  # what the stand-in says of two given lifts and a peak
     assert found.design_outcome is Outcome.CONVERGED
     assert found.quantities[0, column(problem, "cl_max")] == found.constraint_values[2]
     assert np.isnan(found.quantities[1:, column(problem, "cl_max")]).all()
