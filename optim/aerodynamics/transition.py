@@ -21,7 +21,7 @@ References
 ----------
 van Ingen, J. L., TH Delft VTH-74, 1956; Smith, A. M. O., Gamberoni, N., Douglas ES 26388, 1956
 (e^N). Gleyzes, C., Cousteix, J., Bonnet, J. L., 1985; Drela, M., Giles, M. B., AIAA J. 25(10), 1987
-(envelope of similar layers, kinematics). Mack, L. M., JPL Publication 77-15, 1977 (turbulence).
+(envelope of similar layers, kinematics).
 """
 
 from __future__ import annotations
@@ -81,12 +81,6 @@ rounded to continuous slopes, for Newton's method."""
 
 LEAST_FINITE_H = 2.0
 """Shape factor below which t is not formed [-]; the table is constant there already."""
-
-MACK_INTERCEPT, MACK_SLOPE = -8.43, -2.4
-"""N = -8.43 - 2.4 ln Tu, Mack 1977 (from memory)."""
-
-LEAST_TURBULENCE, GREATEST_TURBULENCE = 0.0007, 0.0298
-"""Range of Mack's relation in Tu [-] (from memory); below, sound and not turbulence decides."""
 
 
 def spline_pieces(nodes: FloatArray) -> FloatArray:
@@ -196,29 +190,3 @@ def amplification(H: float, Rt: float) -> tuple[float, float, float]:
     by_ratio = -s * (1.0 + q * (2.0 * a + 3.0 * q * b)) * q_q * ratio
     g_x = by_ratio * Rc_x + g * s_x + s * q * q * (a_x + q * b_x)
     return g, g_x * x_H, -by_ratio / Rt
-
-
-def n_factor_from_turbulence(turbulence: float) -> float:
-    """Critical N of a stream by Mack 1977, N = -8.43 - 2.4 ln Tu.
-
-    Parameters
-    ----------
-    turbulence : float
-        Tu, rms fluctuation over stream speed [-], 0.0007 to 0.0298.
-
-    Returns
-    -------
-    float
-        Critical amplification exponent [-], from 9.0 to 0.
-
-    Raises
-    ------
-    ValueError
-        Outside the range of the relation.
-    """
-    if not LEAST_TURBULENCE * (1 - 1e-9) <= turbulence <= GREATEST_TURBULENCE:
-        raise ValueError(
-            f"Mack's relation holds for a turbulence of {LEAST_TURBULENCE:.2%} to "
-            f"{GREATEST_TURBULENCE:.2%}; found {turbulence:.3%}."
-        )
-    return MACK_INTERCEPT + MACK_SLOPE * math.log(turbulence)

@@ -19,7 +19,6 @@ from optim.aerodynamics import transition
 from optim.aerodynamics.transition import (
     amplification,
     critical_re_theta,
-    n_factor_from_turbulence,
     similar_flow_growth,
     spline_pieces,
 )
@@ -169,16 +168,3 @@ def test_spline_is_scipys_spline_pieces():
         assert pieces[i + 1] @ powers == pytest.approx(judge(i + 0.37), abs=1e-12)
     assert pieces[0] @ powers == pytest.approx(nodes[0] - 0.63 * judge(0, 1), abs=1e-12)
     assert pieces[-1] @ powers == pytest.approx(nodes[-1] + 0.37 * judge(8, 1), abs=1e-12)
-
-
-@pytest.mark.published
-@pytest.mark.parametrize(("percent", "N"), [(0.070, 9), (0.161, 7), (0.563, 4), (1.97, 1)])
-def test_mack(percent, N):
-    # anchors of N = -8.43 - 2.4 ln Tu, Mack, JPL 77-15, 1977 (from memory)
-    assert n_factor_from_turbulence(percent / 100) == pytest.approx(N, abs=0.01)
-
-
-@pytest.mark.parametrize("turbulence", [0.0, 0.0006, 0.03, 7.0, math.nan])
-def test_mack_refuses_what_it_does_not_cover(turbulence):
-    with pytest.raises(ValueError, match=r"0\.07% to 2\.98%"):
-        n_factor_from_turbulence(turbulence)
