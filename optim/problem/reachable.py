@@ -33,8 +33,9 @@ MEASURES = ("thickness", "camber", "nose_radius")
 FEW_SECTIONS = 0.5
 """Share of sections below which the bounds are said to be wide; rule of thumb."""
 
-POINTS_OF_A_PEAK = 8
-"""Coupled points that a search for the peak of the lift takes, for the estimate; rule of thumb."""
+POINTS_OF_A_PEAK = 27
+"""Coupled solutions that a search for the peak of the lift attempts, for the estimate: measured as
+the mean over random designs of the shipped studies. Most take 5 to 15; one without a peak 100."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -71,7 +72,7 @@ class Estimate:
     evaluations : int
         Designs.
     points : int
-        Coupled points, every design flown to the end.
+        Coupled solutions, every design flown to the end.
     seconds : float
         At the given rate [s].
     """
@@ -118,7 +119,7 @@ def estimate(problem: Problem, search: SearchSettings, points_per_second: float)
     search : SearchSettings
         Its population, generations and budget of evaluations.
     points_per_second : float
-        Coupled points a second of all workers together.
+        Coupled solutions a second of all workers together.
 
     Raises
     ------
