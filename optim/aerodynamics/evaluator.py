@@ -174,15 +174,18 @@ class SectionEvaluator:
         Without a neighbour the march goes along the inviscid flow.
         """
         spent = 0
+        residual = math.inf
         for first in (self._carried, self._marched) if near is not None else (self._marched,):
             state = first(point, alpha, near)
             if state is None:
+                residual = math.inf
                 continue
             attempt = self._iterate(point, state)
             spent += attempt.iterations
             if attempt.state is not None:
                 return replace(attempt, iterations=spent)
-        return Attempt(None, spent, math.inf if state is None else attempt.residual)
+            residual = attempt.residual
+        return Attempt(None, spent, residual)
 
     def _carried(self, point: OperatingPoint, alpha: float, near: State | None) -> State | None:
         """Return a neighbour's state at another angle; None if the Reynolds number differs."""
@@ -201,7 +204,7 @@ class SectionEvaluator:
         q = np.zeros(o.total)
         turn = np.array([NEVER, NEVER])
         frac = np.zeros(2)
-        js, _ = start(
+        js = start(
             X, M, q, o.stream, o.influence, o.s, o.sw, alpha, o.n, o.gap,
             o.trips(point.trip_upper, point.trip_lower), turn, frac,
             tsien_parameter(point.mach), point.n_factor, point.reynolds, point.mach**2,
@@ -223,7 +226,7 @@ class SectionEvaluator:
             o.trips(point.trip_upper, point.trip_lower),
             math.nan if point.cl is None else point.cl,
             point.n_factor, point.reynolds, point.mach, tsien_parameter(point.mach),
-            BUDGET, TOLERANCE, np.zeros((BUDGET + 1, 8)),
+            BUDGET, TOLERANCE, np.zeros((BUDGET + 1, 2)),
         )  # fmt: skip
         return Attempt(first if done else None, iterations, residual)
 

@@ -17,10 +17,18 @@ import numpy as np
 
 from optim.aerodynamics.compressibility import compressed_pressure
 from optim.aerodynamics.kernels import njit
+from optim.arrays import FloatArray
 
 
 @njit
-def normal_force(x, y, q, mach, by_q, by_q_along):  # type: ignore[no-untyped-def]
+def normal_force(
+    x: FloatArray,
+    y: FloatArray,
+    q: FloatArray,
+    mach: float,
+    by_q: FloatArray,
+    by_q_along: FloatArray,
+) -> tuple[float, float, float]:
     """Return the pressure force on the contour along and across the chord, and the moment.
 
     Parameters
@@ -77,8 +85,10 @@ def normal_force(x, y, q, mach, by_q, by_q_along):  # type: ignore[no-untyped-de
 
 
 @njit
-def lift_force(x, y, q, alpha, mach, by_q):  # type: ignore[no-untyped-def]
-    """Return cl, its slope by the angle at fixed speeds, cm and cn; fill its slopes by the speeds."""
+def lift_force(
+    x: FloatArray, y: FloatArray, q: FloatArray, alpha: float, mach: float, by_q: FloatArray
+) -> tuple[float, float, float, float]:
+    """Return cl, its slope by the angle at fixed speeds, cm and cn; fill cl's slopes by speed."""
     along = np.empty(len(x))
     cn, ca, cm = normal_force(x, y, q, mach, by_q, along)
     c = math.cos(alpha)
@@ -89,7 +99,7 @@ def lift_force(x, y, q, alpha, mach, by_q):  # type: ignore[no-untyped-def]
 
 
 @njit
-def squire_young(t, d, l):  # type: ignore[no-untyped-def]
+def squire_young(t: float, d: float, v: float) -> float:
     """Return cd = 2 theta u^((H + 5)/2) from the logarithms of theta, delta* and u at a place."""
     H = math.exp(d - t)
-    return 2.0 * math.exp(t + 0.5 * (H + 5.0) * l)
+    return 2.0 * math.exp(t + 0.5 * (H + 5.0) * v)

@@ -5,7 +5,7 @@ stations suffice at the nose, and for terms that are linear in length. An interv
 transition is two intervals, laminar up to a place at which the state is interpolated and turbulent
 after it; where amplification reaches its critical value is part of the equations.
 
-Residuals are named by row, momentum, energy and third, and their slopes by column: t, d, l, s, xi
+Residuals are named by row, momentum, energy and third, and their slopes by column: t, d, v, s, xi
 of the upstream and of the downstream station (layer.py explains the letters).
 
 References
@@ -32,14 +32,14 @@ from optim.aerodynamics.layer import (
     THIRD,
     TURBULENT,
     laminar_station,
-    stress_at_equilibrium,
-    turbulent_station,
+    starting_stress,
+    station_terms,
 )
-from optim.aerodynamics.turbulent import START_RATIO
+from optim.arrays import FloatArray
 
 EQUATIONS = 3
 COLUMNS = 10
-"""Shape of an interval's slopes: t, d, l, s, xi upstream, then downstream."""
+"""Shape of an interval's slopes: t, d, v, s, xi upstream, then downstream."""
 
 RELAXATION = 20.0
 """Length over which a turbulent layer's shape and stress relax, in momentum thicknesses [-]; from
@@ -57,7 +57,7 @@ FREE, FORCED, HELD = 0, 1, 2
 
 
 @njit
-def length_weights(xi1, xi2):  # type: ignore[no-untyped-def]
+def length_weights(xi1: float, xi2: float) -> tuple[float, float, float, float, float]:
     """Return L = ln(xi2/xi1), h = L w and w with their slopes by L.
 
     w = 1/L - 1/(exp(L) - 1) is the downstream weight that integrates a function linear in xi
@@ -77,7 +77,7 @@ def length_weights(xi1, xi2):  # type: ignore[no-untyped-def]
 
 
 @njit
-def relaxation_weight(x):  # type: ignore[no-untyped-def]
+def relaxation_weight(x: float) -> tuple[float, float]:
     """Return the downstream weight 1/(1 - exp(-x)) - 1/x of an interval, and its slope by x.
 
     Exact for a quantity that relaxes over the length interval/x; 1/2 where the interval is short
@@ -93,8 +93,19 @@ def relaxation_weight(x):  # type: ignore[no-untyped-def]
 
 
 @njit
-def balance(row, flux, factor, x1, x2, a, b, W, R, J):  # type: ignore[no-untyped-def]
-    """Add -int flux dxi + int factor dl to one equation and its slopes; return its slope by w.
+def balance(
+    row: int,
+    flux: int,
+    factor: int,
+    x1: FloatArray,
+    x2: FloatArray,
+    a: FloatArray,
+    b: FloatArray,
+    W: tuple[float, float, float, float, float],
+    R: FloatArray,
+    J: FloatArray,
+) -> float:
+    """Add -int flux dxi + int factor dv to one equation and its slopes; return its slope by w.
 
     Parameters
     ----------
@@ -114,23 +125,31 @@ def balance(row, flux, factor, x1, x2, a, b, W, R, J):  # type: ignore[no-untype
     F2 = b[flux, 0]
     G1 = a[factor, 0]
     G2 = b[factor, 0]
-    dl = x2[2] - x1[2]
+    dv = x2[2] - x1[2]
     rise = xi2 * F2 - xi1 * F1
     G = G1 + w * (G2 - G1)
-    R[row] += -(L * xi1 * F1 + h * rise) + G * dl
+    R[row] += -(L * xi1 * F1 + h * rise) + G * dv
     for k in range(4):
-        J[row, UP + k] += -(L - h) * xi1 * a[flux, 1 + k] + (1.0 - w) * dl * a[factor, 1 + k]
-        J[row, DOWN + k] += -h * xi2 * b[flux, 1 + k] + w * dl * b[factor, 1 + k]
+        J[row, UP + k] += -(L - h) * xi1 * a[flux, 1 + k] + (1.0 - w) * dv * a[factor, 1 + k]
+        J[row, DOWN + k] += -h * xi2 * b[flux, 1 + k] + w * dv * b[factor, 1 + k]
     J[row, UP + 2] -= G
     J[row, DOWN + 2] += G
-    by_L = -(xi1 * F1 + h_L * rise) + w_L * (G2 - G1) * dl
+    by_L = -(xi1 * F1 + h_L * rise) + w_L * (G2 - G1) * dv
     J[row, UP + XI] += -(L - h) * F1 - by_L / xi1
     J[row, DOWN + XI] += -h * F2 + by_L / xi2
-    return -L * rise + (G2 - G1) * dl
+    return float(-L * rise + (G2 - G1) * dv)
 
 
 @njit
-def third_balance(w, x1, x2, a, b, R, J):  # type: ignore[no-untyped-def]
+def third_balance(
+    w: float,
+    x1: FloatArray,
+    x2: FloatArray,
+    a: FloatArray,
+    b: FloatArray,
+    R: FloatArray,
+    J: FloatArray,
+) -> float:
     """Fill 2 (s2 - s1) - int A dxi with the downstream weight w; return its slope by w."""
     step = x2[XI] - x1[XI]
     mean = (1.0 - w) * a[THIRD, 0] + w * b[THIRD, 0]
@@ -142,11 +161,19 @@ def third_balance(w, x1, x2, a, b, R, J):  # type: ignore[no-untyped-def]
     J[2, DOWN + 3] += 2.0
     J[2, UP + XI] = mean
     J[2, DOWN + XI] = -mean
-    return -step * (b[THIRD, 0] - a[THIRD, 0])
+    return float(-step * (b[THIRD, 0] - a[THIRD, 0]))
 
 
 @njit
-def plain_interval(kind, x1, x2, a, b, R, J):  # type: ignore[no-untyped-def]
+def plain_interval(
+    kind: int,
+    x1: FloatArray,
+    x2: FloatArray,
+    a: FloatArray,
+    b: FloatArray,
+    R: FloatArray,
+    J: FloatArray,
+) -> None:
     """Fill residuals and slopes of an interval of one kind of layer.
 
     Parameters
@@ -154,7 +181,7 @@ def plain_interval(kind, x1, x2, a, b, R, J):  # type: ignore[no-untyped-def]
     kind : int
         LAMINAR, TURBULENT or WAKE.
     x1, x2 : (5,) array
-        t, d, l, s, xi of the two stations.
+        t, d, v, s, xi of the two stations.
     a, b : (6, 5) array
         Their terms.
     R, J : (3,), (3, 10) array
@@ -190,14 +217,14 @@ def plain_interval(kind, x1, x2, a, b, R, J):  # type: ignore[no-untyped-def]
 
 
 @njit
-def between(x1, x2, f, out):  # type: ignore[no-untyped-def]
+def between(x1: FloatArray, x2: FloatArray, f: float, out: FloatArray) -> None:
     """Fill the state at the fraction f between two stations; s is left to the caller."""
     for k in range(SLOPES):
         out[k] = x1[k] + f * (x2[k] - x1[k])
 
 
 @njit
-def growth_rise(A1, A0, ratio):  # type: ignore[no-untyped-def]
+def growth_rise(A1: float, A0: float, ratio: float) -> tuple[float, float, float]:
     """Return the change of growth over an interval, extrapolated, and its slopes by A1 and A0.
 
     `ratio` is the interval's length over that of the one ahead of it, zero if there is none. The
@@ -210,7 +237,7 @@ def growth_rise(A1, A0, ratio):  # type: ignore[no-untyped-def]
 
 
 @njit
-def amplified(N, A1, rise, step, f):  # type: ignore[no-untyped-def]
+def amplified(N: float, A1: float, rise: float, step: float, f: float) -> float:
     """Return N at the fraction f of an interval: growth extrapolated from the stations upstream.
 
     Second order (Adams-Bashforth), and blind to the state downstream, which is turbulent where
@@ -220,7 +247,7 @@ def amplified(N, A1, rise, step, f):  # type: ignore[no-untyped-def]
 
 
 @njit
-def fraction_at(N, A1, rise, step, critical):  # type: ignore[no-untyped-def]
+def fraction_at(N: float, A1: float, rise: float, step: float, critical: float) -> float:
     """Return the fraction of an interval at which N is critical; -1 if it is not within it."""
     lack = (critical - N) / step
     if lack <= 0.0:
@@ -234,7 +261,18 @@ def fraction_at(N, A1, rise, step, critical):  # type: ignore[no-untyped-def]
 
 
 @njit
-def transition_interval(x1, x2, a, b, f, Re, M2, R, J, by_f):  # type: ignore[no-untyped-def]
+def transition_interval(
+    x1: FloatArray,
+    x2: FloatArray,
+    a: FloatArray,
+    b: FloatArray,
+    f: float,
+    Re: float,
+    M2: float,
+    R: FloatArray,
+    J: FloatArray,
+    by_f: FloatArray,
+) -> None:
     """Fill residuals and slopes of an interval that turns turbulent at the fraction f.
 
     Parameters
@@ -252,10 +290,10 @@ def transition_interval(x1, x2, a, b, f, Re, M2, R, J, by_f):  # type: ignore[no
     between(x1, x2, f, middle)
     lam = np.empty((TERMS, SLOPES))
     tur = np.empty((TERMS, SLOPES))
-    laminar_station(middle[0], middle[1], middle[2], Re, M2, False, lam)
-    start, by_t, by_d, by_l = stress_at_equilibrium(middle[0], middle[1], middle[2], Re, M2)
-    middle[3] = start + 0.5 * math.log(START_RATIO)
-    turbulent_station(middle[0], middle[1], middle[2], middle[3], Re, M2, False, tur)
+    laminar_station(middle[0], middle[1], middle[2], Re, M2, growing=False, out=lam)
+    start, by_t, by_d, by_v = starting_stress(middle[0], middle[1], middle[2], Re, M2)
+    middle[3] = start
+    station_terms(TURBULENT, middle, Re, M2, tur)
     Ra = np.zeros(EQUATIONS)
     Ja = np.zeros((EQUATIONS, COLUMNS))
     Jb = np.zeros((EQUATIONS, COLUMNS))
@@ -275,7 +313,7 @@ def transition_interval(x1, x2, a, b, f, Re, M2, R, J, by_f):  # type: ignore[no
             elif k == 1:
                 middle_k += Jb[row, UP + 3] * by_d
             elif k == 2:
-                middle_k += Jb[row, UP + 3] * by_l
+                middle_k += Jb[row, UP + 3] * by_v
             if row < 2:
                 middle_k += Ja[row, DOWN + k]
                 J[row, UP + k] += Ja[row, UP + k]

@@ -19,6 +19,7 @@ from __future__ import annotations
 import numpy as np
 
 from optim.aerodynamics.kernels import njit
+from optim.arrays import FloatArray
 
 LEAST_H = 2.1
 """Least shape factor of the fits [-]."""
@@ -68,7 +69,7 @@ DISSIPATION_FIT = np.array(
 
 
 @njit
-def polynomial(coefficients, t):  # type: ignore[no-untyped-def]  # compiled: typed by its calls
+def polynomial(coefficients: FloatArray, t: float) -> tuple[float, float]:
     """Return a polynomial in ascending powers and its derivative, by Horner's rule."""
     value = 0.0
     slope = 0.0
@@ -79,7 +80,7 @@ def polynomial(coefficients, t):  # type: ignore[no-untyped-def]  # compiled: ty
 
 
 @njit
-def laminar_closure(H):  # type: ignore[no-untyped-def]
+def laminar_closure(H: float) -> tuple[float, float, float, float, float, float]:
     """Return the laminar relations and their slopes.
 
     Parameters

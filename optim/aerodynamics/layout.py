@@ -3,7 +3,7 @@
 Nodes 0 .. n-1 are the contour from the upper to the lower edge, n .. n+w-1 the wake. Displacement
 enters as the signed mass defect M = q delta*, q being the signed speed along the contour: with both
 signed, the influence matrix does not depend on where the stagnation point lies. A station's state
-is a row (t, d, l, s, xi): logarithms of theta, delta* and u_e, the third unknown, and its length
+is a row (t, d, v, s, xi): logarithms of theta, delta* and u_e, the third unknown, and its length
 from the stagnation point. Sides are 0, upper, and 1, lower; station k of a side counts from the
 stagnation point.
 """
@@ -11,10 +11,12 @@ stagnation point.
 from __future__ import annotations
 
 import math
+from typing import NamedTuple
 
 from optim.aerodynamics.compressibility import compressed_speed
 from optim.aerodynamics.kernels import njit
 from optim.aerodynamics.laminar import STAGNATION_H, STAGNATION_THETA
+from optim.arrays import FloatArray, IntArray
 
 UPPER, LOWER = 0, 1
 
@@ -28,20 +30,53 @@ LEAST_SPEED = 1e-10
 """Speeds are kept this far from zero where their logarithm is taken [-]."""
 
 
+class Layers(NamedTuple):
+    """The layers: state (nt, 5), mass defect, speed and d(ln u)/d(ln q) (nt,) of all stations."""
+
+    X: FloatArray
+    M: FloatArray
+    q: FloatArray
+    kappa: FloatArray
+
+
+class Turning(NamedTuple):
+    """Transition of both sides: the station it lies ahead of, the fraction of the interval, why."""
+
+    turn: IntArray
+    frac: FloatArray
+    why: IntArray
+
+
+class Rows(NamedTuple):
+    """The linear equations: changes of t, s and q of all stations, and the rows left to solve.
+
+    Columns are the changes of the mass defect at the nt stations, ANGLE, PLACE and RIGHT.
+    """
+
+    T: FloatArray
+    S: FloatArray
+    V: FloatArray
+    A: FloatArray
+
+
+ANGLE, PLACE, RIGHT = -3, -2, -1
+"""Columns of the angle of attack, of the stagnation point and of the right side."""
+
+
 @njit
-def node_of(side, k, js):  # type: ignore[no-untyped-def]
+def node_of(side: int, k: int, js: int) -> int:
     """Return the node of station k; js is the last node of the upper side."""
     return js - k if side == UPPER else js + 1 + k
 
 
 @njit
-def stations_of(side, js, n):  # type: ignore[no-untyped-def]
+def stations_of(side: int, js: int, n: int) -> int:
     """Return the number of stations of a side."""
     return js + 1 if side == UPPER else n - 1 - js
 
 
 @njit
-def stagnation_node(q, n, near):  # type: ignore[no-untyped-def]
+def stagnation_node(q: FloatArray, n: int, near: int) -> int:
     """Return the node before the change of sign of the speed that lies nearest to `near`."""
     best = -1
     for j in range(n - 1):
@@ -51,7 +86,7 @@ def stagnation_node(q, n, near):  # type: ignore[no-untyped-def]
 
 
 @njit
-def arc_lengths(x, y, s):  # type: ignore[no-untyped-def]
+def arc_lengths(x: FloatArray, y: FloatArray, s: FloatArray) -> None:
     """Fill the length along the polygon from the first node."""
     s[0] = 0.0
     for j in range(len(x) - 1):
@@ -59,7 +94,9 @@ def arc_lengths(x, y, s):  # type: ignore[no-untyped-def]
 
 
 @njit
-def outer_speed(stream, influence, alpha, M, q):  # type: ignore[no-untyped-def]
+def outer_speed(
+    stream: FloatArray, influence: FloatArray, alpha: float, M: FloatArray, q: FloatArray
+) -> None:
     """Fill the signed speeds for an angle and a mass defect."""
     c = math.cos(alpha)
     sn = math.sin(alpha)
@@ -72,21 +109,21 @@ def outer_speed(stream, influence, alpha, M, q):  # type: ignore[no-untyped-def]
 
 
 @njit
-def place_stagnation(q, s, js):  # type: ignore[no-untyped-def]
+def place_stagnation(q: FloatArray, s: FloatArray, js: int) -> tuple[float, float]:
     """Return the stagnation point on the contour and the slope of the speed there."""
     slope = (q[js + 1] - q[js]) / (s[js + 1] - s[js])
     return s[js] - q[js] / slope, slope
 
 
 @njit
-def keep_from_stagnation(q, slope, js):  # type: ignore[no-untyped-def]
+def keep_from_stagnation(q: FloatArray, slope: float, js: int) -> None:
     """Keep the speeds of the two stations beside the stagnation point from zero."""
     q[js] = min(q[js], -slope * LEAST_LENGTH)
     q[js + 1] = max(q[js + 1], slope * LEAST_LENGTH)
 
 
 @njit
-def set_lengths(X, s, sw, s0, js, n):  # type: ignore[no-untyped-def]
+def set_lengths(X: FloatArray, s: FloatArray, sw: FloatArray, s0: float, js: int, n: int) -> None:
     """Fill the lengths from the stagnation point; the wake counts on from the longer side."""
     for i in range(n):
         X[i, 4] = max(s0 - s[i] if i <= js else s[i] - s0, LEAST_LENGTH)
@@ -96,29 +133,31 @@ def set_lengths(X, s, sw, s0, js, n):  # type: ignore[no-untyped-def]
 
 
 @njit
-def set_speed_and_displacement(X, M, q, k):  # type: ignore[no-untyped-def]
-    """Fill l and d of all stations from the signed speed and mass defect."""
+def set_speed_and_displacement(X: FloatArray, M: FloatArray, q: FloatArray, k: float) -> None:
+    """Fill v and d of all stations from the signed speed and mass defect."""
     for i in range(len(q)):
         speed = max(abs(q[i]), LEAST_SPEED)
-        u, unused = compressed_speed(speed, k)
+        u, _ = compressed_speed(speed, k)
         X[i, 2] = math.log(u)
         X[i, 1] = math.log(max(abs(M[i]), 1e-300) / speed)
 
 
 @njit
-def stagnation_thickness(slope, Re):  # type: ignore[no-untyped-def]
+def stagnation_thickness(slope: float, Re: float) -> float:
     """Return ln theta of Hiemenz's flow for a slope du/ds."""
     return math.log(STAGNATION_THETA) - 0.5 * math.log(Re * slope)
 
 
 @njit
-def mend_stagnation(X, M, q, s, js, n, Re):  # type: ignore[no-untyped-def]
+def mend_stagnation(
+    X: FloatArray, M: FloatArray, q: FloatArray, s: FloatArray, js: int, n: int, Re: float
+) -> None:
     """Give the two stations that lead the sides, and any that changed side, the stagnation state.
 
     The leading stations always have it: so near the stagnation point a small change of the speed is
     a large one of M/q, which no linear step foresees.
     """
-    unused, slope = place_stagnation(q, s, js)
+    _, slope = place_stagnation(q, s, js)
     t = stagnation_thickness(slope, Re)
     delta = STAGNATION_H * math.exp(t)
     for i in range(n):

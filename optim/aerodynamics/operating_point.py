@@ -149,5 +149,5 @@ class SectionFlow:
 
     @property
     def lift_to_drag(self) -> float:
-        """cl / cd [-]; not-a-number without drag."""
+        """Lift over drag, cl / cd [-]; not-a-number without drag."""
         return self.cl / self.cd if self.cd > 0.0 else math.nan

@@ -10,7 +10,6 @@ from optim.aerodynamics.layout import arc_lengths
 from optim.aerodynamics.wake import outer_flow
 from optim.arrays import FloatArray, check_finite, check_shape
 
-
 LATEST_TRANSITION = 0.98
 """Layers turn here at the latest [x/c]. A layer that is laminar so far separates ahead of the edge
 and turns at once in the near wake; left laminar to the edge, it has no solution that an iteration

@@ -28,10 +28,13 @@ import math
 import numpy as np
 
 from optim.aerodynamics.kernels import njit
+from optim.arrays import FloatArray
 
 
 @njit
-def panel_frames(x, y, tx, ty, length):  # type: ignore[no-untyped-def]
+def panel_frames(
+    x: FloatArray, y: FloatArray, tx: FloatArray, ty: FloatArray, length: FloatArray
+) -> None:
     """Fill unit tangents and lengths of the panels between consecutive nodes."""
     for j in range(len(x) - 1):
         dx = x[j + 1] - x[j]
@@ -42,7 +45,9 @@ def panel_frames(x, y, tx, ty, length):  # type: ignore[no-untyped-def]
 
 
 @njit
-def panel_integrals(X1, X2, Y, L, g1, g2, a1, a2):  # type: ignore[no-untyped-def]
+def panel_integrals(
+    X1: float, X2: float, Y: float, L: float, g1: float, g2: float, a1: float, a2: float
+) -> tuple[float, float, float]:
     """Return the streamfunction integrals of one panel at one point.
 
     Parameters
@@ -71,19 +76,21 @@ def panel_integrals(X1, X2, Y, L, g1, g2, a1, a2):  # type: ignore[no-untyped-de
 
 
 @njit
-def branch_outward(Y, X):  # type: ignore[no-untyped-def]
+def branch_outward(Y: float, X: float) -> float:
     """Return the angle of (X, Y) in (-pi/2, 3 pi/2): cut along the outward normal."""
     return 0.5 * math.pi - math.atan2(X, Y)
 
 
 @njit
-def branch_downstream(Y, X):  # type: ignore[no-untyped-def]
+def branch_downstream(Y: float, X: float) -> float:
     """Return the angle of (X, Y) in (0, 2 pi): cut along the panel's own direction."""
     return math.pi + math.atan2(-Y, -X)
 
 
 @njit
-def contour_matrices(x, y, xw, yw):  # type: ignore[no-untyped-def]
+def contour_matrices(
+    x: FloatArray, y: FloatArray, xw: FloatArray, yw: FloatArray
+) -> tuple[FloatArray, FloatArray]:
     """Return the matrices of the streamfunction equations at the nodes.
 
     Parameters
@@ -163,7 +170,9 @@ def contour_matrices(x, y, xw, yw):  # type: ignore[no-untyped-def]
 
 
 @njit
-def close_edge(x, y, tx, ty, lhs):  # type: ignore[no-untyped-def]
+def close_edge(
+    x: FloatArray, y: FloatArray, tx: FloatArray, ty: FloatArray, lhs: FloatArray
+) -> None:
     """Add the base panel and the Kutta condition to the equations.
 
     With q_e = (q[-1] - q[0])/2 the speed at the edge, the base panel from the lower to the upper
@@ -208,7 +217,7 @@ def close_edge(x, y, tx, ty, lhs):  # type: ignore[no-untyped-def]
 
 
 @njit
-def stream_at_rest(x, y):  # type: ignore[no-untyped-def]
+def stream_at_rest(x: FloatArray, y: FloatArray) -> FloatArray:
     """Return the right sides of unit free streams at 0 and 90 degrees, shape (n + 1, 2)."""
     n = len(x)
     right = np.zeros((n + 1, 2))

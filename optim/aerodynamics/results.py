@@ -16,7 +16,7 @@ from optim.aerodynamics.compressibility import compressed_pressure, critical_pre
 from optim.aerodynamics.forces import lift_force, squire_young
 from optim.aerodynamics.interval import FORCED
 from optim.aerodynamics.kernels import njit
-from optim.aerodynamics.layer import FRICTION, SLOPES, TERMS
+from optim.aerodynamics.layer import FRICTION, LAMINAR, SLOPES, TERMS, TURBULENT, station_terms
 from optim.aerodynamics.layout import NEVER
 from optim.aerodynamics.operating_point import (
     LEAST_LIFT_FOR_CENTRE_OF_PRESSURE,
@@ -26,8 +26,7 @@ from optim.aerodynamics.operating_point import (
     Surface,
 )
 from optim.aerodynamics.outer import LATEST_TRANSITION
-from optim.aerodynamics.starter import station_terms
-from optim.arrays import FloatArray, frozen
+from optim.arrays import FloatArray, IntArray, frozen
 from optim.outcomes import Outcome
 
 if TYPE_CHECKING:
@@ -44,12 +43,14 @@ SEPARATED_AT_EDGE = 0.99
 
 
 @njit
-def wall_friction(X, js, turn, n, Re, M2, out):  # type: ignore[no-untyped-def]
+def wall_friction(
+    X: FloatArray, js: int, turn: IntArray, n: int, Re: float, M2: float, out: FloatArray
+) -> None:
     """Fill cf on the local dynamic pressure at the stations of the contour."""
     terms = np.empty((TERMS, SLOPES))
     for i in range(n):
         k = js - i if i <= js else i - js - 1
-        kind = 0 if k < turn[0 if i <= js else 1] else 1
+        kind = LAMINAR if k < turn[0 if i <= js else 1] else TURBULENT
         station_terms(kind, X[i], Re, M2, terms)
         out[i] = 2.0 * math.exp(X[i, 0]) * terms[FRICTION, 0]
 
@@ -161,9 +162,9 @@ def _centre_of_pressure(cl: float, cm: float, cn: float) -> float:
     return float(QUARTER_CHORD - cm / cn)
 
 
-def edge_density(l: float, M2: float) -> float:  # noqa: E741  (l is ln u_e in layer.py)
+def edge_density(v: float, M2: float) -> float:
     """Return the edge density on the free stream's, isentropic."""
-    u2 = math.exp(2.0 * l)
+    u2 = math.exp(2.0 * v)
     return float((1.0 + 0.2 * M2 * (1.0 - u2)) ** 2.5)
 
 

@@ -9,6 +9,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from itertools import pairwise
 from typing import TYPE_CHECKING, Literal
 
 import numpy as np
@@ -109,8 +110,9 @@ def sweep(
     order = np.argsort(np.abs(np.asarray(angles) - easy_angle(evaluator)), kind="stable")
     first = int(order[0])
     found: dict[int, SectionFlow] = {}
+    kept: State | None = None
     for walk in (range(first, len(angles)), range(first - 1, -1, -1)):
-        near: State | None = None if walk.step > 0 else kept
+        near = kept
         for i in walk:
             flow, state = evaluator.solve(replace(point, alpha=float(angles[i]), cl=None), near)
             near = state if state is not None else near
@@ -178,7 +180,7 @@ def attached_range(flows: Sequence[SectionFlow]) -> list[int]:
 
 def _zero_lift(alpha: np.ndarray, cl: np.ndarray, attached: list[int]) -> float:
     """Angle at which attached flows cross zero lift; nan if they do not."""
-    for a, b in zip(attached[:-1], attached[1:], strict=True):
+    for a, b in pairwise(attached):
         if cl[a] <= 0.0 <= cl[b] and cl[b] > cl[a]:
             return float(alpha[a] - cl[a] * (alpha[b] - alpha[a]) / (cl[b] - cl[a]))
     return math.nan

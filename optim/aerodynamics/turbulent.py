@@ -57,7 +57,7 @@ ROUNDING = 8.0
 
 
 @njit
-def rounded_floor(logarithm, floor):  # type: ignore[no-untyped-def]
+def rounded_floor(logarithm: float, floor: float) -> tuple[float, float]:
     """Return the rounded maximum of exp(logarithm) and `floor`, and its logarithmic slope."""
     excess = ROUNDING * (logarithm - math.log(floor))
     if excess > 30.0:
@@ -67,7 +67,7 @@ def rounded_floor(logarithm, floor):  # type: ignore[no-untyped-def]
 
 
 @njit
-def skin_friction(Hk, r, M2):  # type: ignore[no-untyped-def]
+def skin_friction(Hk: float, r: float, M2: float) -> tuple[float, float, float, float]:
     """Return Swafford's cf and its slopes by Hk, r = ln Re_theta and the squared edge Mach number.
 
     The compressibility factor Fc = sqrt(1 + 0.2 Me^2) enters as published.
@@ -92,7 +92,7 @@ def skin_friction(Hk, r, M2):  # type: ignore[no-untyped-def]
 
 
 @njit
-def energy_shape_factor(Hk, r):  # type: ignore[no-untyped-def]
+def energy_shape_factor(Hk: float, r: float) -> tuple[float, float, float]:
     """Return H*(Hk, Re_theta) of Drela and Giles and its slopes by Hk and r = ln Re_theta."""
     Rs, Rs_slope = rounded_floor(r, RE_THETA_OF_SEPARATION)
     H0 = 3.0 + 400.0 / Rs
@@ -126,7 +126,12 @@ def energy_shape_factor(Hk, r):  # type: ignore[no-untyped-def]
 
 
 @njit
-def slip_speed(energy, Hk, H, wake):  # type: ignore[no-untyped-def]
+def slip_speed(
+    energy: float,
+    Hk: float,
+    H: float,
+    wake: bool,  # noqa: FBT001  compiled functions have no keyword-only arguments
+) -> tuple[float, float, float, float]:
     """Return Us = (H*/2)(1 - (4/3)(Hk - 1)/H), rounded towards its ceiling, and its slopes.
 
     Slopes are by H*, Hk and H.
@@ -145,7 +150,7 @@ def slip_speed(energy, Hk, H, wake):  # type: ignore[no-untyped-def]
 
 
 @njit
-def shape_excess(Hk):  # type: ignore[no-untyped-def]
+def shape_excess(Hk: float) -> tuple[float, float]:
     """Return Hk - 1, rounded so that it stays positive, and its slope."""
     x = Hk - 1.0
     root = math.sqrt(x * x + 4.0 * LEAST_SHAPE_EXCESS * LEAST_SHAPE_EXCESS)

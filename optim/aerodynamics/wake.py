@@ -18,6 +18,7 @@ import numpy as np
 
 from optim.aerodynamics.kernels import njit
 from optim.aerodynamics.panel import contour_matrices, panel_frames, stream_at_rest
+from optim.arrays import FloatArray
 
 WAKE_LENGTH = 1.0
 """Length of the wake line [chords]: the drag taken at its end is within 0.1 % of that at 2."""
@@ -33,7 +34,7 @@ WAKE_ANGLE = math.radians(4.0)
 
 
 @njit
-def growth_ratio(first, total, steps):  # type: ignore[no-untyped-def]
+def growth_ratio(first: float, total: float, steps: int) -> float:
     """Return r of first (1 + r + ... + r^(steps-1)) = total, by bisection."""
     low = 1.0 + 1e-9
     high = 4.0
@@ -47,7 +48,9 @@ def growth_ratio(first, total, steps):  # type: ignore[no-untyped-def]
 
 
 @njit
-def vortex_and_source(px, py, ax, ay, tx, ty, L):  # type: ignore[no-untyped-def]
+def vortex_and_source(
+    px: float, py: float, ax: float, ay: float, tx: float, ty: float, L: float
+) -> tuple[float, float, float, float, float, float]:
     """Return the velocities at a point off a panel, per unit of what lies on it.
 
     Parameters
@@ -82,19 +85,37 @@ def vortex_and_source(px, py, ax, ay, tx, ty, L):  # type: ignore[no-untyped-def
 
 
 @njit
-def velocity(px, py, x, y, tx, ty, length, q, alpha):  # type: ignore[no-untyped-def]
+def velocity(
+    px: float,
+    py: float,
+    x: FloatArray,
+    y: FloatArray,
+    tx: FloatArray,
+    ty: FloatArray,
+    length: FloatArray,
+    q: FloatArray,
+    alpha: float,
+) -> tuple[float, float]:
     """Return the inviscid velocity at a point off the contour; the base panel is left out."""
     u = math.cos(alpha)
     v = math.sin(alpha)
     for j in range(len(x) - 1):
-        u1, v1, u2, v2, us, vs = vortex_and_source(px, py, x[j], y[j], tx[j], ty[j], length[j])
+        u1, v1, u2, v2, _, _ = vortex_and_source(px, py, x[j], y[j], tx[j], ty[j], length[j])
         u += u1 * q[j] + u2 * q[j + 1]
         v += v1 * q[j] + v2 * q[j + 1]
     return u, v
 
 
 @njit
-def wake_line(x, y, tx, ty, length, q, alpha):  # type: ignore[no-untyped-def]
+def wake_line(
+    x: FloatArray,
+    y: FloatArray,
+    tx: FloatArray,
+    ty: FloatArray,
+    length: FloatArray,
+    q: FloatArray,
+    alpha: float,
+) -> tuple[FloatArray, FloatArray]:
     """Return the nodes of the wake: from the middle of the edge along the streamline.
 
     Parameters
@@ -128,7 +149,18 @@ def wake_line(x, y, tx, ty, length, q, alpha):  # type: ignore[no-untyped-def]
 
 
 @njit
-def wake_rows(x, y, tx, ty, length, xw, yw, wx, wy, wl):  # type: ignore[no-untyped-def]
+def wake_rows(
+    x: FloatArray,
+    y: FloatArray,
+    tx: FloatArray,
+    ty: FloatArray,
+    length: FloatArray,
+    xw: FloatArray,
+    yw: FloatArray,
+    wx: FloatArray,
+    wy: FloatArray,
+    wl: FloatArray,
+) -> tuple[FloatArray, FloatArray, FloatArray]:
     """Return what induces the speed along the wake.
 
     Returns
@@ -180,7 +212,16 @@ def wake_rows(x, y, tx, ty, length, xw, yw, wx, wy, wl):  # type: ignore[no-unty
 
 
 @njit
-def base_rows(x, y, tx, ty, xw, yw, stream, speeds):  # type: ignore[no-untyped-def]
+def base_rows(
+    x: FloatArray,
+    y: FloatArray,
+    tx: FloatArray,
+    ty: FloatArray,
+    xw: FloatArray,
+    yw: FloatArray,
+    stream: FloatArray,
+    speeds: FloatArray,
+) -> None:
     """Add what the base panel of a blunt edge induces along the wake, by the edge speed."""
     n = len(x)
     dx = x[0] - x[n - 1]
@@ -203,7 +244,7 @@ def base_rows(x, y, tx, ty, xw, yw, stream, speeds):  # type: ignore[no-untyped-
 
 
 @njit
-def by_mass(sources, length, wl, n):  # type: ignore[no-untyped-def]
+def by_mass(sources: FloatArray, length: FloatArray, wl: FloatArray, n: int) -> FloatArray:
     """Turn columns by source strength into columns by signed mass defect at the nodes.
 
     A panel's source is the difference of the signed mass over its length; contour nodes come
@@ -225,7 +266,9 @@ def by_mass(sources, length, wl, n):  # type: ignore[no-untyped-def]
 
 
 @njit
-def outer_flow(x, y):  # type: ignore[no-untyped-def]
+def outer_flow(
+    x: FloatArray, y: FloatArray
+) -> tuple[FloatArray, FloatArray, FloatArray, FloatArray]:
     """Return the outer flow of a section: all that does not depend on the condition.
 
     Parameters
@@ -249,7 +292,7 @@ def outer_flow(x, y):  # type: ignore[no-untyped-def]
     panel_frames(x, y, tx, ty, length)
     right = stream_at_rest(x, y)
     far = np.array([2.0, 3.0])
-    lhs, unused = contour_matrices(x, y, far, np.zeros(2))
+    lhs, _ = contour_matrices(x, y, far, np.zeros(2))
     guess = np.linalg.solve(lhs, right)
     q = math.cos(WAKE_ANGLE) * guess[:n, 0] + math.sin(WAKE_ANGLE) * guess[:n, 1]
     xw, yw = wake_line(x, y, tx, ty, length, q, WAKE_ANGLE)
