@@ -140,11 +140,7 @@ class SectionEvaluator:
         self, point: OperatingPoint, near: State | None = None
     ) -> tuple[SectionFlow, State | None]:
         """Return the flow at a condition and its state, None if it did not converge."""
-        if not in_range(point):
-            return SectionFlow(point, Outcome.OUT_OF_RANGE, self.panels), None
-        alpha = point.alpha
-        if alpha is None:
-            alpha = self.outer.angle_of_lift(point.cl / VISCOUS_SLOPE)  # type: ignore[operator]
+        alpha = self._first_angle(point) if in_range(point) else math.nan
         if math.isnan(alpha):
             return SectionFlow(point, Outcome.OUT_OF_RANGE, self.panels), None
         spent = 0
@@ -159,14 +155,15 @@ class SectionEvaluator:
             attempt = self._continue(point, alpha)
             spent += attempt.iterations
         if attempt.state is None:
-            outcome = Outcome.NOT_CONVERGED
-            return (
-                SectionFlow(
-                    point, outcome, self.panels, iterations=spent, residual=attempt.residual
-                ),
-                None,
-            )
+            lost = SectionFlow(point, Outcome.NOT_CONVERGED, self.panels)
+            return replace(lost, iterations=spent, residual=attempt.residual), None
         return build_flow(self.outer, point, attempt.state, spent, attempt.residual), attempt.state
+
+    def _first_angle(self, point: OperatingPoint) -> float:
+        """Return the angle given, or a first one for the lift; nan if no angle has that lift."""
+        if point.cl is not None:
+            return self.outer.angle_of_lift(point.cl / VISCOUS_SLOPE)
+        return math.nan if point.alpha is None else point.alpha
 
     def _attempt(self, point: OperatingPoint, alpha: float, near: State | None) -> Attempt:
         """Iterate from a neighbouring state as it stands, else from a march on its displacement.

@@ -6,7 +6,8 @@ transition is two intervals, laminar up to a place at which the state is interpo
 after it; where amplification reaches its critical value is part of the equations.
 
 Residuals are named by row, momentum, energy and third, and their slopes by column: t, d, v, s, xi
-of the upstream and of the downstream station (layer.py explains the letters).
+of the upstream and of the downstream station (layer.py explains the letters). x1, a and x2, b are
+the states and terms of the two ends, R (3,) and J (3, 10) the residuals and their slopes.
 
 References
 ----------

@@ -6,6 +6,26 @@ signed, the influence matrix does not depend on where the stagnation point lies.
 is a row (t, d, v, s, xi): logarithms of theta, delta* and u_e, the third unknown, and its length
 from the stagnation point. Sides are 0, upper, and 1, lower; station k of a side counts from the
 stagnation point.
+
+Arguments have the same names in all kernels:
+
+X, M, q, kappa : (nt, 5), (nt,), (nt,), (nt,) array
+    States, mass defect, signed speeds and d(ln u)/d(ln q) of the nt = n + w stations.
+s, sw : (n,), (w,) array
+    Lengths along the contour from its first node and along the wake from the edge [chords].
+terms : (nt, 6, 5) array
+    Terms of the stations (layer.py); `a` and `b` are those of an interval's two ends.
+js, n : int
+    Last node of the upper side; number of nodes of the contour.
+i, p : int
+    A station and the one upstream of it.
+turn, frac, why : (2,) array
+    Transition of each side: station that ends its interval, fraction of that, FREE, FORCED, HELD.
+trip : float
+    Length from the stagnation point at which transition is forced [chords].
+critical, Re, M2, k : float
+    N at transition, Reynolds number on the chord, squared Mach number, Tsien's parameter [-]; an
+    integer k is a station.
 """
 
 from __future__ import annotations

@@ -68,7 +68,8 @@ def _side(
     cf: FloatArray,
     turn: int,
     frac: float,
-    forced: bool,  # noqa: FBT001
+    *,
+    forced: bool,
 ) -> SideState:
     """Read one side, its stations in the direction of the flow.
 
@@ -150,8 +151,12 @@ def build_flow(
         stagnation_side="upper" if s0 < outer.s_nose else "lower",
         cp_min=float(cp[peak]),
         cp_min_x=float(outer.x[peak]),
-        upper=_side(outer.x[up], H[up], cf[up], turn[0], float(state.frac[0]), bool(forced[0])),
-        lower=_side(outer.x[low], H[low], cf[low], turn[1], float(state.frac[1]), bool(forced[1])),
+        upper=_side(
+            outer.x[up], H[up], cf[up], turn[0], float(state.frac[0]), forced=bool(forced[0])
+        ),
+        lower=_side(
+            outer.x[low], H[low], cf[low], turn[1], float(state.frac[1]), forced=bool(forced[1])
+        ),
         surface=_surface(outer, state, cp, friction, s0, mach),
     )
 

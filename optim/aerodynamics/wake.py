@@ -4,6 +4,9 @@ The line follows the streamline of the inviscid flow at one angle and then stays
 shape is of second order (a frozen wake costs at most 0.1 % in drag), and one set of matrices
 serves every condition of a section.
 
+In all functions x, y are the n nodes of the contour, tx, ty and length the unit tangents and the
+lengths of its panels; xw, yw and wx, wy, wl are those of the wake, w nodes.
+
 References
 ----------
 Lighthill, M. J., J. Fluid Mech. 4, 1958. Katz, J., Plotkin, A., Low-Speed Aerodynamics, 2nd ed.,
