@@ -242,16 +242,16 @@ def fill_interval(
 
 
 @njit
-def lead_interval(J: FloatArray, by_f: FloatArray, xi: float) -> None:
+def lead_interval(J: FloatArray, by_f: FloatArray, xi: float, kappa: float) -> None:
     """Tie an interval's upstream end to the stagnation point, at the length xi from it.
 
     That station has the stagnation point's H and a speed in step with its length and the slope
-    there, which takes the place of the fraction f.
+    there, which takes the place of the fraction f. `kappa` is d(ln u)/d(ln q) at it.
     """
     for row in range(EQUATIONS):
         J[row, 0] += J[row, 1]
-        J[row, 4] += J[row, 2] / xi
-        by_f[row] = J[row, 2]
+        by_f[row] = kappa * J[row, 2]
+        J[row, 4] += by_f[row] / xi
         J[row, 1] = 0.0
         J[row, 2] = 0.0
 
@@ -295,7 +295,7 @@ def assemble_side(
             place_row(place, X, terms, growth, i, p, step_before, frac, rows.S)
         fill_interval(X, terms, p, i, k - turn, frac, Re, M2, R, J, by_f)
         if k == 1:
-            lead_interval(J, by_f, X[p, 4])
+            lead_interval(J, by_f, X[p, 4], layers.kappa[p])
             eliminate_interval(R, J, by_f, slope_row, p, i, sign, layers, rows)
         else:
             eliminate_interval(R, J, by_f, place, p, i, sign, layers, rows)

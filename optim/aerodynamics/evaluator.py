@@ -9,7 +9,7 @@ that are halved where they fail. A budget of iterations ends each attempt, never
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 
 import numpy as np
@@ -22,6 +22,7 @@ from optim.aerodynamics.compressibility import (
 )
 from optim.aerodynamics.coupling import newton
 from optim.aerodynamics.forces import lift_force
+from optim.aerodynamics.laminar import GREATEST_H
 from optim.aerodynamics.layout import NEVER
 from optim.aerodynamics.operating_point import (
     LEAST_LIFT_FOR_CENTRE_OF_PRESSURE,
@@ -55,11 +56,17 @@ LEAST_STEP = math.radians(0.2)
 CONTINUATION_SOLVES = 40
 """Solves that one continuation may take."""
 
+CARRIED_BELOW = 5e5
+"""Reynolds number below which a neighbour's state is tried as it stands before a march [-]."""
+
 EASY_LIFT = 0.3
 """Lift coefficient from which a continuation sets out [-]; attached on any usual section."""
 
 VISCOUS_SLOPE = 0.92
 """Lift of the coupled flow over that of the inviscid one, for a first angle [-]."""
+
+LEAST_TRUSTED_H = 1.95
+"""Least laminar shape factor of a solution that is given [-]."""
 
 REYNOLDS_RANGE = (1e4, 1e9)
 MACH_LIMIT = 0.8
@@ -89,6 +96,10 @@ class Attempt:
     state: State | None
     iterations: int
     residual: float
+
+
+Start = Callable[[OperatingPoint, float, "State | None"], "State | None"]
+"""A way to a first state: condition, angle, neighbour."""
 
 
 class SectionEvaluator:
@@ -137,9 +148,12 @@ class SectionEvaluator:
         return answers
 
     def solve(
-        self, point: OperatingPoint, near: State | None = None
+        self, point: OperatingPoint, near: State | None = None, *, patient: bool = True
     ) -> tuple[SectionFlow, State | None]:
-        """Return the flow at a condition and its state, None if it did not converge."""
+        """Return the flow at a condition and its state, None if it did not converge.
+
+        Without patience no continuation is tried: for a walk that halves its own steps.
+        """
         alpha = self._first_angle(point) if in_range(point) else math.nan
         if math.isnan(alpha):
             return SectionFlow(point, Outcome.OUT_OF_RANGE, self.panels), None
@@ -151,12 +165,15 @@ class SectionEvaluator:
         if attempt.state is None:
             attempt = self._attempt(point, alpha, None)
             spent += attempt.iterations
-        if attempt.state is None:
+        if attempt.state is None and patient:
             attempt = self._continue(point, alpha)
             spent += attempt.iterations
         if attempt.state is None:
             lost = SectionFlow(point, Outcome.NOT_CONVERGED, self.panels)
             return replace(lost, iterations=spent, residual=attempt.residual), None
+        if leaves_relations(attempt.state, self.outer.n):
+            lost = SectionFlow(point, Outcome.CLAMP_ACTIVE, self.panels)
+            return replace(lost, iterations=spent, residual=attempt.residual), attempt.state
         return build_flow(self.outer, point, attempt.state, spent, attempt.residual), attempt.state
 
     def _first_angle(self, point: OperatingPoint) -> float:
@@ -172,7 +189,7 @@ class SectionEvaluator:
         """
         spent = 0
         residual = math.inf
-        for first in (self._carried, self._marched) if near is not None else (self._marched,):
+        for first in self._starts(point, near):
             state = first(point, alpha, near)
             if state is None:
                 residual = math.inf
@@ -183,6 +200,18 @@ class SectionEvaluator:
                 return replace(attempt, iterations=spent)
             residual = attempt.residual
         return Attempt(None, spent, residual)
+
+    def _starts(self, point: OperatingPoint, near: State | None) -> tuple[Start, ...]:
+        """Return the ways to a first state, the likelier first.
+
+        At low Reynolds numbers a neighbour's bubble is the better guess; at higher ones transition
+        may lie far from the neighbour's, and a march finds it.
+        """
+        if near is None:
+            return (self._marched,)
+        if point.reynolds < CARRIED_BELOW:
+            return (self._carried, self._marched)
+        return (self._marched, self._carried)
 
     def _carried(self, point: OperatingPoint, alpha: float, near: State | None) -> State | None:
         """Return a neighbour's state at another angle; None if the Reynolds number differs."""
@@ -303,6 +332,18 @@ class SectionEvaluator:
         from optim.aerodynamics.sweep import maximum_lift  # noqa: PLC0415  (it walks this class)
 
         return maximum_lift(self, point)
+
+
+def leaves_relations(state: State, n: int) -> bool:
+    """Whether a laminar station ended where the laminar relations only go on straight.
+
+    The edge's own acceleration may lower the shape factor a little below that of any similar layer
+    (2.07, flow into a sink); the straight continuation is trusted down to LEAST_TRUSTED_H.
+    """
+    k = np.where(np.arange(n) <= state.js, state.js - np.arange(n), np.arange(n) - state.js - 1)
+    laminar = k < np.where(np.arange(n) <= state.js, state.turn[0], state.turn[1])
+    H = np.exp(state.X[:n, 1] - state.X[:n, 0])[laminar]
+    return bool(H.size and (H.min() < LEAST_TRUSTED_H or H.max() > GREATEST_H))
 
 
 def in_range(point: OperatingPoint) -> bool:

@@ -43,10 +43,14 @@ UPPER, LOWER = 0, 1
 NEVER = 1 << 30
 """Station number of a transition that does not happen."""
 
-LEAST_LENGTH = 1e-7
+LEAST_LENGTH = 1e-12
 """The two stations beside the stagnation point are kept this far from it [chords]."""
 
-LEAST_SPEED = 1e-10
+STAGNATION_SLACK = 2e-9
+"""Speed by which a station beside the stagnation point may have the wrong sign [-]: a stagnation
+point on a node would else change sides at every iteration."""
+
+LEAST_SPEED = 1e-13
 """Speeds are kept this far from zero where their logarithm is taken [-]."""
 
 
@@ -98,6 +102,8 @@ def stations_of(side: int, js: int, n: int) -> int:
 @njit
 def stagnation_node(q: FloatArray, n: int, near: int) -> int:
     """Return the node before the change of sign of the speed that lies nearest to `near`."""
+    if 0 <= near < n - 1 and q[near] < STAGNATION_SLACK and q[near + 1] > -STAGNATION_SLACK:
+        return near
     best = -1
     for j in range(n - 1):
         if q[j] < 0.0 <= q[j + 1] and (best < 0 or abs(j - near) < abs(best - near)):

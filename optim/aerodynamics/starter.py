@@ -60,6 +60,10 @@ LEAST_TURBULENT = 100.0
 """Re_theta below which a trip leaves a layer laminar [-]. Relaminarised and tripped layers are
 found laminar below some 100 to 300 (Preston, J. Fluid Mech. 3, 1958; from memory)."""
 
+PARTED_STATIONS = 3
+"""Stations that the march holds separated before it lets the layer turn; at Re 1e6 and more a
+bubble is no longer."""
+
 SEPARATION_START = 3.8
 """Shape factor at which the march lets a laminar layer turn [-]; the one at which differential
 solutions separate is 3.5 to 3.8."""
@@ -182,6 +186,12 @@ def settle(
 
 
 @njit
+def attached(x2: FloatArray, done: bool) -> bool:  # noqa: FBT001  as for `start`
+    """Whether a laminar station closed short of separation."""
+    return done and math.exp(x2[1] - x2[0]) < SEPARATION_START
+
+
+@njit
 def sweep_side(
     X: FloatArray,
     M: FloatArray,
@@ -205,12 +215,12 @@ def sweep_side(
     """
     a = np.empty((TERMS, SLOPES))
     x2 = np.empty(SLOPES)
-    turn[side] = NEVER
-    frac[side] = 0.0
+    turn[side], frac[side] = NEVER, 0.0
     sign = -1.0 if side == UPPER else 1.0
     lead_side(X, node_of(side, 0, js), Re, M2, a)
     growth_before = 0.0
     step_before = 0.0
+    parted = 0
     for j in range(1, stations_of(side, js, n)):
         i = node_of(side, j, js)
         p = node_of(side, j - 1, js)
@@ -222,28 +232,27 @@ def sweep_side(
         N, f = 0.0, -1.0
         if turn[side] == NEVER:
             N, f = turning_fraction(X, a, growth_before, i, p, step_before, trip, critical, Re)
-            growth_before = a[THIRD, 0]
-            step_before = step
+            growth_before, step_before = a[THIRD, 0], step
             if f >= 0.0 and j >= earliest:
-                turn[side] = j
-                frac[side] = f
+                turn[side], frac[side] = j, f
                 set_out_turbulent(x2, X, p, i, outside, Re, M2)
+            else:
+                f = -1.0
         kind = LAMINAR if turn[side] == NEVER else TURBULENT
         done = close_station(kind, f, X[p], a, x2, external, own, k, Re, M2)
-        attached = done and math.exp(x2[1] - x2[0]) < SEPARATION_START
-        if kind == LAMINAR and j >= earliest and not attached:
-            # where the laminar layer separates, the march lets it turn; the iteration will move
-            # transition downstream as far as amplification allows
-            kind = TURBULENT
-            f = 0.0
-            turn[side] = j
+        if kind == LAMINAR and not attached(x2, done):
+            parted += 1
+            hold_shape(X[p], a, x2, outside, 0.0, LAMINAR)
+        if kind == LAMINAR and j >= earliest and parted > PARTED_STATIONS:
+            # a short bubble is held as it separates; behind it the march lets the layer turn, and
+            # the iteration moves transition downstream as far as amplification allows
+            kind, f, turn[side] = TURBULENT, 0.0, j
             set_out_turbulent(x2, X, p, i, outside, Re, M2)
             done = close_station(kind, f, X[p], a, x2, external, own, k, Re, M2)
-        if not done or not within(kind, math.exp(x2[1] - x2[0])):
-            stress = X[p, 3] if f < 0.0 else LARGEST_START_STRESS
-            hold_shape(X[p], a, x2, outside, stress, kind)
         if kind == LAMINAR:
             x2[3] = min(N, critical)
+        elif not done or not within(kind, math.exp(x2[1] - x2[0])):
+            hold_shape(X[p], a, x2, outside, X[p, 3] if f < 0.0 else LARGEST_START_STRESS, kind)
         settle(kind, x2, i, sign, X, M, q, k, Re, M2, a)
 
 

@@ -294,7 +294,9 @@ class _PeakSearch:
         return replace(best, point=self.point)
 
     def _solve(self, alpha: float, near: State | None) -> tuple[SectionFlow, State | None]:
-        flow, state = self.evaluator.solve(replace(self.point, alpha=alpha, cl=None), near)
+        flow, state = self.evaluator.solve(
+            replace(self.point, alpha=alpha, cl=None), near, patient=near is None
+        )
         self.iterations += flow.iterations
         return flow, state
 

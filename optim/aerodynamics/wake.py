@@ -1,6 +1,6 @@
 """The wake line behind the edge, and the speed that vortices and sources induce along it.
 
-The line follows the streamline of the inviscid flow at one angle and then stays where it is: its
+The line follows the streamline of the inviscid flow at zero lift and then stays where it is: its
 shape is of second order (a frozen wake costs at most 0.1 % in drag), and one set of matrices
 serves every condition of a section.
 
@@ -31,9 +31,6 @@ WAKE_FIRST_STEP = 0.002
 
 WAKE_NODES = 18
 """Number of nodes, in geometric progression."""
-
-WAKE_ANGLE = math.radians(4.0)
-"""Angle of attack whose streamline the wake follows [rad]."""
 
 
 @njit
@@ -297,8 +294,15 @@ def outer_flow(
     far = np.array([2.0, 3.0])
     lhs, _ = contour_matrices(x, y, far, np.zeros(2))
     guess = np.linalg.solve(lhs, right)
-    q = math.cos(WAKE_ANGLE) * guess[:n, 0] + math.sin(WAKE_ANGLE) * guess[:n, 1]
-    xw, yw = wake_line(x, y, tx, ty, length, q, WAKE_ANGLE)
+    still = 0.0
+    upright = 0.0
+    for j in range(n - 1):
+        still += (guess[j, 0] + guess[j + 1, 0]) * length[j]
+        upright += (guess[j, 1] + guess[j + 1, 1]) * length[j]
+    # the angle without circulation: the wake of a mirrored section is the mirrored wake
+    angle = -math.atan(still / upright)
+    q = math.cos(angle) * guess[:n, 0] + math.sin(angle) * guess[:n, 1]
+    xw, yw = wake_line(x, y, tx, ty, length, q, angle)
     w = len(xw)
     wx = np.empty(w - 1)
     wy = np.empty(w - 1)

@@ -298,7 +298,8 @@ def test_wake_speeds_follow_the_exact_flow(name, exact_sections, solved):
     """Along the wake line, by the inverse of the map, beyond the first few steps from the edge."""
     section = exact_sections[name][0]
     outer = solved(name, 160).outer
-    alpha = math.radians(4)
+    # the angle without lift, whose streamline the wake follows
+    alpha = outer.angle_of_lift(0.0)
     a = alpha + section.turn
     x, y = outer.xw, outer.yw
     found = speeds(outer, alpha)[outer.n :]
