@@ -53,9 +53,7 @@ _SENTENCES = {
     Outcome.NOT_A_SECTION: (
         "The design's contour is no section: it crosses itself, has a spike or no thickness."
     ),
-    Outcome.NOT_EVALUATED: (
-        "The design was given up before this condition was reached."
-    ),
+    Outcome.NOT_EVALUATED: ("The design was given up before this condition was reached."),
     Outcome.WORKER_LOST: (
         "The process that evaluated this design died twice; the design is left out."
     ),

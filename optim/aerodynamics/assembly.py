@@ -21,7 +21,6 @@ from optim.aerodynamics.interval import (
     transition_interval,
 )
 from optim.aerodynamics.kernels import njit
-from optim.aerodynamics.laminar import STAGNATION_H
 from optim.aerodynamics.layer import (
     LAMINAR,
     THIRD,
@@ -39,11 +38,10 @@ from optim.aerodynamics.layout import (
     Rows,
     Turning,
     node_of,
-    place_stagnation,
-    stagnation_thickness,
     stations_of,
 )
 from optim.aerodynamics.starter import join_wake
+from optim.aerodynamics.transition import BACKGROUND
 from optim.arrays import FloatArray, IntArray
 
 
@@ -189,29 +187,24 @@ def march_growth(
 
 @njit
 def leading_station(
-    layers: Layers, rows: Rows, s: FloatArray, js: int, i: int, slope_row: FloatArray, Re: float
-) -> float:
-    """Fill the rows of the station beside the stagnation point; return its residual.
+    layers: Layers, rows: Rows, js: int, i: int, sign: float, slope_row: FloatArray
+) -> None:
+    """Fill the rows of the station beside the stagnation point, which has that point's state.
 
-    `slope_row` is filled with the change of the logarithm of the speed's slope there.
+    `slope_row` is filled with the change of the logarithm of the speed's slope there; `sign` is
+    d(xi)/d(s0) of the side.
     """
-    X, M, q, _ = layers
+    X, _, q, _ = layers
     T, S, V, A = rows
-    _, slope = place_stagnation(q, s, js)
-    r = X[i, 0] - stagnation_thickness(slope, Re)
     spread = q[js + 1] - q[js]
     for j in range(len(slope_row)):
         slope_row[j] = (V[js + 1, j] - V[js, j]) / spread
         T[i, j] = -0.5 * slope_row[j]
         S[i, j] = 0.0
-    T[i, RIGHT] -= r
-    # H is that of the stagnation point, dM/M - dq/q - dt = 0; times q, which may be next to zero
-    lack = X[i, 1] - X[i, 0] - math.log(STAGNATION_H)
-    for j in range(len(slope_row)):
+        # dM/M - dq/q - dt = 0 times q, which may be next to zero
         A[i, j] = -q[i] * T[i, j] - V[i, j]
-    A[i, i] += q[i] / M[i]
-    A[i, RIGHT] += q[i] * lack
-    return float(max(abs(r), abs(lack)))
+    A[i, i] += math.exp(-X[i, 1])
+    S[i, PLACE] = sign * BACKGROUND
 
 
 @njit
@@ -261,7 +254,6 @@ def assemble_side(
     layers: Layers,
     rows: Rows,
     terms: FloatArray,
-    s: FloatArray,
     js: int,
     n: int,
     side: int,
@@ -283,7 +275,8 @@ def assemble_side(
     frac = turning.frac[side]
     free = turning.why[side] == FREE and turn < NEVER
     i = node_of(side, 0, js)
-    worst = leading_station(layers, rows, s, js, i, slope_row, Re)
+    leading_station(layers, rows, js, i, sign, slope_row)
+    worst = 0.0
     step_before = 0.0
     for k in range(1, stations_of(side, js, n)):
         p = i

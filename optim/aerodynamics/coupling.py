@@ -32,7 +32,7 @@ from optim.aerodynamics.layout import (
     Layers,
     Rows,
     Turning,
-    keep_from_stagnation,
+    lead_sides,
     mend_stagnation,
     outer_speed,
     place_stagnation,
@@ -69,10 +69,10 @@ def refresh(
     if found < 1 or found > n - 3:
         return -1
     s0, slope = place_stagnation(q, s, found)
-    keep_from_stagnation(q, slope, found)
-    mend_stagnation(X, M, q, s, found, n, Re)
+    mend_stagnation(X, M, q, slope, found, n, Re)
     set_lengths(X, s, sw, s0, found, n)
     set_speed_and_displacement(X, M, q, k)
+    lead_sides(X, slope, found, k)
     for i in range(len(q)):
         kappa[i] = compressed_speed(abs(q[i]), k)[1]
     return found
@@ -180,8 +180,8 @@ def assemble(
     M2 = mach * mach
     q = layers.q
     mismatch = outer_rows(rows.V, stream, influence, alpha, layers.M, q)
-    upper = assemble_side(layers, rows, terms, s, js, n, UPPER, turning, Re, M2)
-    lower = assemble_side(layers, rows, terms, s, js, n, LOWER, turning, Re, M2)
+    upper = assemble_side(layers, rows, terms, js, n, UPPER, turning, Re, M2)
+    lower = assemble_side(layers, rows, terms, js, n, LOWER, turning, Re, M2)
     wake = assemble_wake(layers, rows, terms, n, gap, turning.turn, Re, M2)
     lift = lift_row(rows, x, y, q, alpha, mach, wanted)
     stagnation_row(rows, q, s, js, s0)

@@ -4,8 +4,9 @@ One-parameter relations between the shape factor H = delta*/theta and the energy
 the friction l = Re_theta cf/2 and the dissipation d = 2 CD Re_theta/H*, fitted to numerical
 solutions of f''' + f f'' + beta (1 - f'^2) = 0 on the attached and the separated branch.
 
-Range 2.1 <= H <= 20; outside it the relations go on with the value and slope of the end, which is
-only a path for the iteration: a solution that ends there is not accepted.
+The fits hold for 2.1 <= H <= 20. From there they go on as powers of H with the value and slope of
+their end, within 6 % of the similar layers up to H = 40; below 2.1 they go on straight. Beyond 40,
+and well below 2.1, is only a path for the iteration: a solution that ends there is not accepted.
 
 References
 ----------
@@ -24,8 +25,14 @@ from optim.arrays import FloatArray
 LEAST_H = 2.1
 """Least shape factor of the fits [-]."""
 
-GREATEST_H = 20.0
+FITTED_H = 20.0
 """Greatest shape factor of the fits [-]."""
+
+GREATEST_H = 40.0
+"""Greatest shape factor of a solution: as far as the powers of H were compared [-]."""
+
+LEAST_ENERGY = 0.9
+"""What is taken off H* before it is continued as a power of H [-]; chosen for H* at H = 40."""
 
 STAGNATION_H = 2.2157902713775726
 STAGNATION_THETA = 0.29244198724542037
@@ -80,6 +87,14 @@ def polynomial(coefficients: FloatArray, t: float) -> tuple[float, float]:
 
 
 @njit
+def power_beyond(H: float, value: float, slope: float) -> tuple[float, float]:
+    """Return a power of H with given value and slope at FITTED_H, and its slope."""
+    exponent = FITTED_H * slope / value
+    there = value * (H / FITTED_H) ** exponent
+    return there, exponent * there / H
+
+
+@njit
 def laminar_closure(H: float) -> tuple[float, float, float, float, float, float]:
     """Return the laminar relations and their slopes.
 
@@ -97,7 +112,7 @@ def laminar_closure(H: float) -> tuple[float, float, float, float, float, float]
     dissipation, dissipation_H : float
         d = 2 CD Re_theta/H* and its slope [-].
     """
-    inside = min(max(H, LEAST_H), GREATEST_H)
+    inside = min(max(H, LEAST_H), FITTED_H)
     beyond = H - inside
     t = 1.0 / (inside - 1.0)
     ratio, ratio_t = polynomial(ENERGY_FIT, t)
@@ -107,6 +122,11 @@ def laminar_closure(H: float) -> tuple[float, float, float, float, float, float]
     friction_H = -friction_t * t * t
     dissipation, dissipation_t = polynomial(DISSIPATION_FIT, t)
     dissipation_H = -dissipation_t * t * t
+    if beyond > 0.0:
+        energy, energy_H = power_beyond(H, energy - LEAST_ENERGY, energy_H)
+        friction, friction_H = power_beyond(H, friction, friction_H)
+        dissipation, dissipation_H = power_beyond(H, dissipation, dissipation_H)
+        return energy + LEAST_ENERGY, energy_H, friction, friction_H, dissipation, dissipation_H
     return (
         energy + energy_H * beyond,
         energy_H,

@@ -23,7 +23,7 @@ from typing import TypeAlias
 from optim.aerodynamics.compressibility import GAMMA
 from optim.aerodynamics.kernels import njit
 from optim.aerodynamics.laminar import laminar_closure
-from optim.aerodynamics.transition import amplification, similar_flow_growth
+from optim.aerodynamics.transition import BACKGROUND, growth_per_thickness
 from optim.aerodynamics.turbulent import (
     EQUILIBRIUM_CONSTANT,
     LAG_CONSTANT,
@@ -172,14 +172,14 @@ def laminar_station(
     for k in range(SLOPES):
         out[THIRD, k] = 0.0
     if growing:
-        slope, slope_H, slope_R = amplification(Hk, Rt)
-        if slope > 0.0:
-            rate, rate_H = similar_flow_growth(Hk)
+        out[THIRD, 0] = BACKGROUND
+        A, A_H, A_R = growth_per_thickness(Hk, Rt)
+        if A > 0.0:
             per_length = math.exp(-t)
-            A = slope * rate * per_length
-            A_H = (slope_H * rate + slope * rate_H) * per_length
-            A_R = slope_R * rate * per_length * Rt
-            out[THIRD, 0] = A
+            A *= per_length
+            A_H *= per_length
+            A_R *= per_length * Rt
+            out[THIRD, 0] += A
             out[THIRD, 1] = -A_H * HkH + A_R - A
             out[THIRD, 2] = A_H * HkH
             out[THIRD, 3] = A_H * Hk_v + A_R * Rt_v

@@ -46,9 +46,10 @@ NEVER = 1 << 30
 LEAST_LENGTH = 1e-12
 """The two stations beside the stagnation point are kept this far from it [chords]."""
 
-STAGNATION_SLACK = 2e-9
-"""Speed by which a station beside the stagnation point may have the wrong sign [-]: a stagnation
-point on a node would else change sides at every iteration."""
+STAGNATION_SLACK = 1e-4
+"""Share of the speeds' difference beside the stagnation point by which one of the two stations may
+lie on the wrong side of it [-]: the first interval of the two sides differs by its truncation
+error, and a stagnation point that close to a node would else change sides at every iteration."""
 
 LEAST_SPEED = 1e-13
 """Speeds are kept this far from zero where their logarithm is taken [-]."""
@@ -102,8 +103,10 @@ def stations_of(side: int, js: int, n: int) -> int:
 @njit
 def stagnation_node(q: FloatArray, n: int, near: int) -> int:
     """Return the node before the change of sign of the speed that lies nearest to `near`."""
-    if 0 <= near < n - 1 and q[near] < STAGNATION_SLACK and q[near + 1] > -STAGNATION_SLACK:
-        return near
+    if 0 <= near < n - 1:
+        slack = STAGNATION_SLACK * (q[near + 1] - q[near])
+        if q[near] < slack and q[near + 1] > -slack:
+            return near
     best = -1
     for j in range(n - 1):
         if q[j] < 0.0 <= q[j + 1] and (best < 0 or abs(j - near) < abs(best - near)):
@@ -142,13 +145,6 @@ def place_stagnation(q: FloatArray, s: FloatArray, js: int) -> tuple[float, floa
 
 
 @njit
-def keep_from_stagnation(q: FloatArray, slope: float, js: int) -> None:
-    """Keep the speeds of the two stations beside the stagnation point from zero."""
-    q[js] = min(q[js], -slope * LEAST_LENGTH)
-    q[js + 1] = max(q[js + 1], slope * LEAST_LENGTH)
-
-
-@njit
 def set_lengths(X: FloatArray, s: FloatArray, sw: FloatArray, s0: float, js: int, n: int) -> None:
     """Fill the lengths from the stagnation point; the wake counts on from the longer side."""
     for i in range(n):
@@ -176,21 +172,32 @@ def stagnation_thickness(slope: float, Re: float) -> float:
 
 @njit
 def mend_stagnation(
-    X: FloatArray, M: FloatArray, q: FloatArray, s: FloatArray, js: int, n: int, Re: float
+    X: FloatArray, M: FloatArray, q: FloatArray, slope: float, js: int, n: int, Re: float
 ) -> None:
     """Give the two stations that lead the sides, and any that changed side, the stagnation state.
 
     The leading stations always have it: so near the stagnation point a small change of the speed is
-    a large one of M/q, which no linear step foresees.
+    a large one of M/q, which no linear step foresees. Their mass defect has the sign of the speed,
+    on whichever side of the stagnation point they lie by a hair.
     """
-    _, slope = place_stagnation(q, s, js)
     t = stagnation_thickness(slope, Re)
     delta = STAGNATION_H * math.exp(t)
     for i in range(n):
-        upper = i <= js
-        wrong = (M[i] >= 0.0) if upper else (M[i] <= 0.0)
-        if wrong or i in (js, js + 1):
-            speed = max(abs(q[i]), LEAST_SPEED)
-            M[i] = -speed * delta if upper else speed * delta
-            X[i, 0] = t
-            X[i, 3] = 0.0
+        if i in (js, js + 1):
+            q[i] = math.copysign(max(abs(q[i]), LEAST_SPEED), q[i])
+            M[i] = q[i] * delta
+        elif (M[i] >= 0.0) if i <= js else (M[i] <= 0.0):
+            M[i] = math.copysign(max(abs(q[i]), LEAST_SPEED) * delta, 1.0 if i > js else -1.0)
+        else:
+            continue
+        X[i, 0] = t
+        X[i, 3] = 0.0
+
+
+@njit
+def lead_sides(X: FloatArray, slope: float, js: int, k: float) -> None:
+    """Fill v and d of the two stations that lead the sides: speeds in step with their lengths."""
+    for i in (js, js + 1):
+        u, _ = compressed_speed(slope * X[i, 4], k)
+        X[i, 2] = math.log(u)
+        X[i, 1] = X[i, 0] + math.log(STAGNATION_H)

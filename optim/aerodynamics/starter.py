@@ -15,10 +15,9 @@ import math
 import numpy as np
 
 from optim.aerodynamics.closing import close_station, hold_shape, within
-from optim.aerodynamics.compressibility import compressed_speed, incompressible_speed
+from optim.aerodynamics.compressibility import incompressible_speed
 from optim.aerodynamics.interval import amplified, fraction_at, growth_rise
 from optim.aerodynamics.kernels import njit
-from optim.aerodynamics.laminar import STAGNATION_H
 from optim.aerodynamics.layer import (
     LAMINAR,
     SLOPES,
@@ -32,7 +31,7 @@ from optim.aerodynamics.layer import (
 from optim.aerodynamics.layout import (
     NEVER,
     UPPER,
-    keep_from_stagnation,
+    lead_sides,
     node_of,
     outer_speed,
     place_stagnation,
@@ -41,6 +40,7 @@ from optim.aerodynamics.layout import (
     stagnation_thickness,
     stations_of,
 )
+from optim.aerodynamics.transition import BACKGROUND
 from optim.arrays import FloatArray, IntArray
 
 EDGE_REACH = 0.05
@@ -143,7 +143,7 @@ def turning_fraction(
 @njit
 def lead_side(X: FloatArray, i: int, Re: float, M2: float, out: FloatArray) -> None:
     """Start amplification at the first station of a side, and fill its terms."""
-    X[i, 3] = 0.0
+    X[i, 3] = BACKGROUND * X[i, 4]
     station_terms(LAMINAR, X[i], Re, M2, out)
 
 
@@ -349,16 +349,14 @@ def start(
     if js < 1 or js > n - 3:
         return -1
     s0, slope = place_stagnation(q, s, js)
-    keep_from_stagnation(q, slope, js)
     if not warm:
         soften_edge(q, s, sw, n)
     set_lengths(X, s, sw, s0, js, n)
+    X[js, 0] = X[js + 1, 0] = stagnation_thickness(slope, Re)
+    lead_sides(X, slope, js, k)
     for side in range(2):
         trip = s0 - trips[0] if side == UPPER else trips[1] - s0
         first = node_of(side, 0, js)
-        X[first, 0] = stagnation_thickness(slope, Re)
-        X[first, 1] = X[first, 0] + math.log(STAGNATION_H)
-        X[first, 2] = math.log(compressed_speed(abs(q[first]), k)[0])
         M[first] = q[first] * math.exp(X[first, 1])
         sweep_side(X, M, q, js, n, side, trip, 1, turn, frac, k, critical, Re, M2)
     sweep_wake(X, M, q, n, gap, turn, k, Re, M2)

@@ -17,7 +17,7 @@ LEAST_SHAPE = (1.8, 1.02, 1.0)
 """Shape factors that a laminar, a turbulent and a wake station keep away from during the iteration
 [-]: the turbulent relations have a second root below 1, which is no layer."""
 
-LEAST_ROOM = 0.05
+LEAST_ROOM = 0.01
 """Distance from the least shape factor that is always left [-]."""
 
 SHAPE_ROOM = 0.4

@@ -13,6 +13,9 @@ for this project by tests/derivations/stability_envelope.py. It distils the enve
 
 and tabulates ln Rc, ln s, a, b and theta_eta^2 at even steps of t = 1/(H - 1).
 
+A layer that has left the wall grows faster; separated_growth.py says how the envelope passes over
+to that.
+
 Range: 2.136 <= H <= 26 and 0.5 <= N <= 13; there Re_theta at given N is within 0.3 % of the
 solution at the nodes and 0.7 % between them. Parallel flow, two-dimensional waves, no receptivity.
 Beyond the table its columns go on straight to H = 2.10 and 101, and are constant from there.
@@ -31,6 +34,7 @@ import math
 import numpy as np
 
 from optim.aerodynamics.kernels import njit
+from optim.aerodynamics.separated_growth import separated_growth, separated_share
 from optim.arrays import FloatArray
 
 FIRST_T, STEP_T = 0.04, 0.03
@@ -78,6 +82,12 @@ CRITICAL, SLOPE, LINEAR, SQUARE, GROWTH = 0, 1, 2, 3, 4
 ONSET = 0.03
 """Half-width in q over which growth sets in [-], about Rc: the kink that the envelope has there is
 rounded to continuous slopes, for Newton's method."""
+
+BACKGROUND = 0.3
+"""Growth of N over a chord wherever it is [1/chord]. Where an accelerated layer damps every wave
+the envelope stands still, and a layer that falls short of the critical N by a hair would turn
+turbulent half a chord later: no place of transition is then consistent with the flow it makes. Over
+a whole chord this is a tenth of the difference between a quiet and an average tunnel."""
 
 LEAST_FINITE_H = 2.0
 """Shape factor below which t is not formed [-]; the table is constant there already."""
@@ -190,3 +200,36 @@ def amplification(H: float, Rt: float) -> tuple[float, float, float]:
     by_ratio = -s * (1.0 + q * (2.0 * a + 3.0 * q * b)) * q_q * ratio
     g_x = by_ratio * Rc_x + g * s_x + s * q * q * (a_x + q * b_x)
     return g, g_x * x_H, -by_ratio / Rt
+
+
+@njit
+def growth_per_thickness(H: float, Rt: float) -> tuple[float, float, float]:
+    """Return theta dN/dxi along a layer, attached or separated, and its slopes.
+
+    Parameters
+    ----------
+    H : float
+        Kinematic shape factor [-].
+    Rt : float
+        Re_theta, positive [-].
+
+    Returns
+    -------
+    A, A_H, A_Rt : float
+        Growth of N over one momentum thickness and its derivatives by H and Re_theta [-].
+    """
+    g, g_H, g_Rt = amplification(H, Rt)
+    if g == 0.0:
+        return 0.0, 0.0, 0.0
+    rate, rate_H = similar_flow_growth(H)
+    A, A_H, A_Rt = g * rate, g_H * rate + g * rate_H, g_Rt * rate
+    share, share_H = separated_share(H)
+    if share == 0.0:
+        return A, A_H, A_Rt
+    other, other_H = separated_growth(H)
+    attached = 1.0 - share
+    return (
+        A * attached + other * share,
+        A_H * attached + other_H * share + share_H * (other - A),
+        A_Rt * attached,
+    )

@@ -96,9 +96,9 @@ def _locked(path: Path, run: Path) -> int:
 
 def _refusal(path: Path, run: Path) -> InputError:
     who = _noted(path) or "another process"
-    return InputError([
-        Fault(f"{who} is writing this run; stop it first, or wait for it to end.", file=str(run))
-    ])
+    return InputError(
+        [Fault(f"{who} is writing this run; stop it first, or wait for it to end.", file=str(run))]
+    )
 
 
 def _lock(descriptor: int, kind: int) -> bool:

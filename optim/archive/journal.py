@@ -185,12 +185,15 @@ class Journal(JournalView):
         with self._transaction() as db:
             put_generation(db, record.generation, items)
             put_state(db, state)
-            put_seal(db, Seal(
-                "running",
-                seal.generations + 1,
-                seal.evaluations + len(record.designs),
-                link(seal.chain, items),
-            ))
+            put_seal(
+                db,
+                Seal(
+                    "running",
+                    seal.generations + 1,
+                    seal.evaluations + len(record.designs),
+                    link(seal.chain, items),
+                ),
+            )
         self._lengths["search_constraint"] = search_constraint_count(items)
 
     def end(self, ending: Ending) -> None:
@@ -263,10 +266,12 @@ class Journal(JournalView):
 
 def _refuse_to_overwrite(run: Path) -> None:
     if run.exists() or journal_path(run).exists():
-        raise InputError([
-            Fault(
-                "exists already and is never overwritten; go on with `sectionwright resume`, "
-                "or give another place with --output.",
-                file=str(run),
-            )
-        ])
+        raise InputError(
+            [
+                Fault(
+                    "exists already and is never overwritten; go on with `sectionwright resume`, "
+                    "or give another place with --output.",
+                    file=str(run),
+                )
+            ]
+        )

@@ -126,7 +126,7 @@ class JournalView:
         """Return what the journal says of itself, checked against its state and sessions."""
         with self._read() as db:
             rows = db.execute("SELECT ending, generations, evaluations, chain, seal FROM seal")
-            (*said, expected), = rows.fetchall()
+            ((*said, expected),) = rows.fetchall()
             seal = Seal(*said)
             if seal.digest(self._state_digest(), self._sessions_digest()) != expected:
                 raise ValueError("its seal does not match its content")
@@ -279,13 +279,15 @@ def connect(path: Path, options: str) -> sqlite3.Connection:
 
 def newer_format(path: Path, version: int) -> ArchiveVersionError:
     """Return the refusal of a newer format."""
-    return ArchiveVersionError([
-        Fault(
-            f"has format {version}; this version reads formats up to {FORMAT_VERSION}, "
-            "install a newer sectionwright to read it.",
-            file=str(path),
-        )
-    ])
+    return ArchiveVersionError(
+        [
+            Fault(
+                f"has format {version}; this version reads formats up to {FORMAT_VERSION}, "
+                "install a newer sectionwright to read it.",
+                file=str(path),
+            )
+        ]
+    )
 
 
 @contextlib.contextmanager

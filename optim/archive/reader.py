@@ -186,9 +186,9 @@ class Run:
         """
         if not 0 <= row < self.evaluations:
             held = f"0 to {self.evaluations - 1}" if self.evaluations else "no evaluations yet"
-            raise InputError([
-                Fault(f"has no evaluation {row}; it holds {held}.", file=str(self.path))
-            ])
+            raise InputError(
+                [Fault(f"has no evaluation {row}; it holds {held}.", file=str(self.path))]
+            )
         rows = slice(row, row + 1)
         along = [dataset.field for dataset in RECORD if dataset.along == EVALUATION]
         return {field: self.read(field, rows)[0] for field in along}
@@ -241,9 +241,7 @@ class Run:
     def digests(self) -> dict[str, str]:
         """Return the SHA-256 of every dataset that two equal runs have in common."""
         return {
-            path: digest
-            for path, digest in self._all_digests.items()
-            if not depends_on_clock(path)
+            path: digest for path, digest in self._all_digests.items() if not depends_on_clock(path)
         }
 
     def status(self) -> RunStatus:
@@ -283,7 +281,9 @@ def _state(ending: str, process: Writer | None) -> State:
     if process is not None:
         return "running"
     states: dict[str, State] = {
-        "running": "interrupted", "stopped": "stopped", "finished": "finished",
+        "running": "interrupted",
+        "stopped": "stopped",
+        "finished": "finished",
     }
     return states[ending]
 

@@ -233,8 +233,7 @@ def _put_growing(
 
 def _put_empty(file: h5py.File) -> dict[str, str]:
     empty: Items = {
-        described.path: np.empty([0] * len(described.axes), described.dtype)
-        for described in RECORD
+        described.path: np.empty([0] * len(described.axes), described.dtype) for described in RECORD
     }
     return {path: _put_fixed(file, path, array) for path, array in empty.items()}
 

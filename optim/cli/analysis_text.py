@@ -155,9 +155,7 @@ def _surface_table(point: Document) -> str:
 def _stations(surface: Document) -> Iterator[Document]:
     """Yield one row a station; a layer's values are absent in an inviscid flow."""
     for k in range(len(surface["x"])):
-        yield {
-            name: None if values is None else values[k] for name, values in surface.items()
-        }
+        yield {name: None if values is None else values[k] for name, values in surface.items()}
 
 
 def analysis_rows(results: list[Document], *, surface: bool) -> list[Document]:

@@ -93,14 +93,10 @@ def resume(
     from optim.runner.resume import resume_run  # noqa: PLC0415
 
     settings = _settings(workers, generations, until)
-    _sitting(
-        run_file, lambda listener: resume_run(run_file, settings, listener), quiet=quiet
-    )
+    _sitting(run_file, lambda listener: resume_run(run_file, settings, listener), quiet=quiet)
 
 
-def _settings(
-    workers: int | None, generations: int | None, until: str | None
-) -> SessionSettings:
+def _settings(workers: int | None, generations: int | None, until: str | None) -> SessionSettings:
     from optim.runner.executors import processors  # noqa: PLC0415
     from optim.runner.start import SessionSettings  # noqa: PLC0415
 

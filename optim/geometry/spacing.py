@@ -1,16 +1,22 @@
-"""Where the panels end: full cosine spacing in the parameter of the curve.
+"""Where the panels end: cosine spacing in the parameter of the curve, denser yet at the nose.
 
-The nodes lie on the exact curve. Clustering at the nose resolves the suction peak and at the edge
-the Kutta condition; the rule is common practice for panel methods.
+The nodes lie on the exact curve. Full cosine spacing, common practice for panel methods, resolves
+the Kutta condition at the edge and the suction peak of a round nose. The laminar bubble behind the
+nose of a thin section is shorter than its panels; it gets NOSE_DENSITY times as many.
 """
 
 from __future__ import annotations
 
 from functools import lru_cache
 
+import numpy as np
+
 from optim.arrays import FloatArray, frozen
-from optim.geometry.curve import cosine_parameters
 from optim.geometry.section import Section
+
+NOSE_DENSITY = 2.5
+"""Nodes at the nose beside those of full cosine spacing [-]; the edges keep that spacing, and the
+panels between are up to 1.3 times as long. Bubbles of 1e-3 chords are then some stations long."""
 
 LEAST_PANELS = 10
 """Below this the two sides of a section cannot be told apart; rule of thumb."""
@@ -43,4 +49,8 @@ def panel_nodes(section: Section, panels: int) -> FloatArray:
 def _parameters(panels: int) -> FloatArray:
     if panels < LEAST_PANELS:
         raise ValueError(f"A contour needs at least {LEAST_PANELS} panels; found {panels}.")
-    return frozen(cosine_parameters(panels))
+    xi = np.linspace(0.0, 2.0 * np.pi, panels + 1)
+    a = (1.0 - 1.0 / NOSE_DENSITY) / 4.0
+    phi = xi + 2.0 * a * np.sin(xi) - a * np.sin(2.0 * xi)  # density 1 at both ends
+    t = -np.cos(phi / 2.0)
+    return frozen((t - t[::-1]) / 2.0)  # the rounding of pi mirrors too

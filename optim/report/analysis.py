@@ -98,7 +98,8 @@ class Analysed:
         return entry
 
 
-def analyse(section: Section, asked: Asked, make: Callable[[FloatArray], SectionEvaluator]
+def analyse(
+    section: Section, asked: Asked, make: Callable[[FloatArray], SectionEvaluator]
 ) -> list[Analysed]:
     """Return the flows about a section, one entry a Reynolds number.
 

@@ -87,9 +87,7 @@ def _entries(run: Run, judgement: Judgement, rows: list[int]) -> list[Document]:
             "id": row,
             "generation": int(found["generation_of"][k]),
             "variables": _named(run.header.variable_names, found["designs"][k]),
-            "objectives": _named(
-                [aim.name for aim in judgement.aims], judgement.objectives[row]
-            ),
+            "objectives": _named([aim.name for aim in judgement.aims], judgement.objectives[row]),
             "constraints": _limits(judgement, row),
             "conditions": _flows(judgement, recorded, found["quantities"][k], found["outcomes"][k]),
             "outcomes": dict(Counter(Outcome(code).label for code in found["outcomes"][k])),

@@ -37,9 +37,7 @@ def grid_fields(half: Document, asked: Document, double: Document) -> Document:
     return {
         "panels": [one["panels"] for one in three],
         "outcomes": [one["outcome"] for one in three],
-        "quantities": {
-            name: _quantity(*[float(one[name]) for one in three]) for name in COMPARED
-        },
+        "quantities": {name: _quantity(*[float(one[name]) for one in three]) for name in COMPARED},
     }
 
 
@@ -60,4 +58,3 @@ def _quantity(half: float, asked: float, double: float) -> Document:
 def panel_counts(panels: int) -> tuple[int, int]:
     """Return half and double the panels; half is even, so that a node stays on the nose."""
     return 2 * (panels // 4), 2 * panels
-

@@ -109,10 +109,13 @@ def test_one_step_leaves_the_second_order(case, kind, solved):
 
 @pytest.mark.parametrize("case", list(CASES))
 def test_convergence_is_quadratic(case, solved):
-    """The last residuals of the solution itself: each below the 1.5th power of the one before."""
+    """The last residuals of the solution itself: each below the 1.5th power of the one before.
+
+    They count from 5e-3: before that transition still passes from station to station.
+    """
     history = solved(case)["history"]
     residual = history[: np.count_nonzero(history[:, 0]), 0]
-    last = residual[residual < 2e-2]
+    last = residual[residual < 5e-3]
     assert len(last) >= 2
     for before, after in pairwise(last):
         assert after < max(before**1.5, 1e-11)

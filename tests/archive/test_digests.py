@@ -59,9 +59,9 @@ def test_clock_and_machine_do_not_count(tmp_path):
 )
 def test_a_difference_is_seen_and_named(tmp_path, header, record, place):
     a = run_digests(write_run(tmp_path / "a.h5", 2, hypervolume=1.0))
-    b = run_digests(write_run(
-        tmp_path / "b.h5", 2, make_header(**header), **{"hypervolume": 1.0, **record}
-    ))
+    b = run_digests(
+        write_run(tmp_path / "b.h5", 2, make_header(**header), **{"hypervolume": 1.0, **record})
+    )
     assert {path for path in a if a[path] != b[path]} == {place}
 
 

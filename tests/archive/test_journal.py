@@ -127,9 +127,9 @@ def test_only_the_last_state_is_kept(run):
     write_journal(run, 9)
     with closing(sqlite3.connect(journal_path(run))) as db:
         paths = [path for (path,) in db.execute("SELECT path FROM state ORDER BY path")]
-    assert paths == sorted([
-        "/state/json", *(f"/state/arrays/{name}" for name in make_record(8).state_arrays)
-    ])
+    assert paths == sorted(
+        ["/state/json", *(f"/state/arrays/{name}" for name in make_record(8).state_arrays)]
+    )
 
 
 def test_the_history_of_a_field_is_at_hand_when_going_on(run):

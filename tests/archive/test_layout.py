@@ -82,9 +82,13 @@ def test_the_file_has_the_datasets_of_the_layout_and_no_others(archive):
 def test_types_and_axes_are_those_of_the_layout(archive):
     header = make_header()
     lengths = {
-        "evaluation": 36, "generation": 3, "search_constraint": 4,
-        "variable": len(header.variable_names), "objective": len(header.objective_names),
-        "constraint": len(header.constraint_names), "condition": len(header.condition_names),
+        "evaluation": 36,
+        "generation": 3,
+        "search_constraint": 4,
+        "variable": len(header.variable_names),
+        "objective": len(header.objective_names),
+        "constraint": len(header.constraint_names),
+        "condition": len(header.condition_names),
         "condition_quantity": len(header.condition_quantity_names),
         "section_quantity": len(header.section_quantity_names),
     }

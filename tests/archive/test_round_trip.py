@@ -18,7 +18,8 @@ from optim.outcomes import Outcome
 
 NAMES = st.lists(
     st.text(st.characters(codec="utf-8", exclude_characters="\x00"), max_size=20),
-    min_size=1, max_size=4,
+    min_size=1,
+    max_size=4,
 ).map(tuple)
 MAYBE_ABSENT = st.floats(allow_infinity=False, width=64)
 STATE_ARRAYS = st.dictionaries(
@@ -101,15 +102,23 @@ def test_any_numbers_come_back_bit_for_bit(quantities, state):
 def test_a_study_without_constraints_is_stored(run):
     none = np.empty(0)
     header = make_header(
-        constraint_names=(), constraint_kinds=(), constraint_units=(),
-        constraint_limits=none, constraint_scales=none,
+        constraint_names=(),
+        constraint_kinds=(),
+        constraint_units=(),
+        constraint_limits=none,
+        constraint_scales=none,
     )
     wide = np.empty((12, 0))
     with Journal.create(run, header) as journal:
         for generation in range(2):
-            journal.append(make_record(
-                generation, constraint_values=wide, margins=wide, search_constraints=wide,
-            ))
+            journal.append(
+                make_record(
+                    generation,
+                    constraint_values=wide,
+                    margins=wide,
+                    search_constraints=wide,
+                )
+            )
         finish(journal)
     with open_run(run) as opened:
         assert opened.margins.shape == (24, 0)
@@ -147,9 +156,7 @@ def test_generations_may_differ_in_size(run):
         assert opened.evaluations == sum(sizes)
         expected = np.concatenate([make_record(g, n).designs for g, n in enumerate(sizes)])
         np.testing.assert_array_equal(opened.designs, expected)
-        np.testing.assert_array_equal(
-            opened.read("generation_of"), np.repeat(np.arange(4), sizes)
-        )
+        np.testing.assert_array_equal(opened.read("generation_of"), np.repeat(np.arange(4), sizes))
 
 
 def test_one_evaluation_is_read_by_its_row(run):

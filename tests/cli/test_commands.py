@@ -131,9 +131,7 @@ class TestFront:
         own = json.loads(command("front", run_file, "--json").out)
         found = json.loads(command("front", run_file, "--study", other, "--json").out)
         assert 0 < found["feasible"] < own["feasible"]
-        assert all(
-            one["constraints"]["cl_max@slow"]["value"] >= 1.5 for one in found["designs"]
-        )
+        assert all(one["constraints"]["cl_max@slow"]["value"] >= 1.5 for one in found["designs"])
 
     def test_empty_front_says_which_limit_nothing_keeps(self, command, run_file, tmp_path,
                                                         study_file):  # fmt: skip
@@ -242,8 +240,10 @@ class TestAnalyse:
         """The points of NACA 0012 doubled in size and turned by three degrees."""
         turn = math.radians(3.0)
         points = naca_section("0012").points(cosine_parameters(160))
-        turned = 2.0 * points @ np.array(
-            [[math.cos(turn), math.sin(turn)], [-math.sin(turn), math.cos(turn)]]
+        turned = (
+            2.0
+            * points
+            @ np.array([[math.cos(turn), math.sin(turn)], [-math.sin(turn), math.cos(turn)]])
         )
         path = tmp_path / "turned.dat"
         np.savetxt(path, turned, header="a turned section", comments="")

@@ -150,9 +150,7 @@ def test_misuse_is_one_line(command, words, said):
         ("", ("--reynolds", "1e6", "--alpha", "2"), "name one of its designs"),
     ],
 )
-def test_misuse_of_a_recorded_design_is_one_line(
-    command, run_file, suffix, words, said
-):
+def test_misuse_of_a_recorded_design_is_one_line(command, run_file, suffix, words, said):
     done = command("analyse", f"{run_file}{suffix}", *words)
     assert done.code == 2
     (line,) = done.err.splitlines()

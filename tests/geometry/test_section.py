@@ -12,7 +12,7 @@ from optim.geometry.bezier import Bezier
 from optim.geometry.cst import Cst
 from optim.geometry.naca import naca_section
 from optim.geometry.section import Section, section_from_coordinates
-from optim.geometry.spacing import panel_nodes
+from optim.geometry.spacing import NOSE_DENSITY, panel_nodes
 
 CST = np.array([0.19, 0.2, 0.18, 0.2, 0.18, 0.2, -0.15, -0.1, -0.12, -0.08, 0.1, 0.05])
 BEZIER = np.array([0.18, 0.06, 0.07, 0.06, 0.04, 0.02, -0.04, -0.05, -0.04, -0.03, -0.02])
@@ -151,7 +151,7 @@ def test_stations_outside_the_chord_are_misuse(section):
             section.depth(x)
 
 
-def test_panel_nodes_lie_on_the_curve_at_cosine_spacing(section):
+def test_panel_nodes_lie_on_the_curve(section):
     nodes = panel_nodes(section, 160)
     assert nodes.shape == (161, 2)
     assert nodes[[0, 80, 160]] == pytest.approx(section.points(np.array([-1.0, 0.0, 1.0])), abs=0)
@@ -161,6 +161,19 @@ def test_panel_nodes_lie_on_the_curve_at_cosine_spacing(section):
     assert np.all(panel_nodes(section, 320)[::2] == pytest.approx(nodes, abs=1e-15))
     with pytest.raises(ValueError, match="at least 10 panels"):
         panel_nodes(section, 9)
+
+
+def test_nodes_are_those_of_cosine_spacing_at_the_edges_and_denser_at_the_nose():
+    """t = sign sqrt(x) of a thin section, against t = -cos(phi/2), phi even over 0 to 2 pi."""
+    nodes = panel_nodes(naca_section("0002"), 400)
+    t = np.sqrt(np.maximum(nodes[:, 0], 0.0)) * np.sign(np.arange(401) - 200)
+    even = -np.cos(np.linspace(0.0, np.pi, 401))
+    ratio = np.diff(t) / np.diff(even)
+    assert ratio[[0, -1]] == pytest.approx(1.0, abs=0.01)
+    assert ratio[[199, 200]] == pytest.approx(1 / NOSE_DENSITY, abs=0.01)
+    longest, usual = (np.abs(np.diff(np.square(x))).max() for x in (t, even))
+    assert longest / usual == pytest.approx(1.3, abs=0.05)
+    assert np.array_equal(nodes[:, 0], nodes[::-1, 0])
 
 
 def test_nodes_are_the_callers_own(section):
