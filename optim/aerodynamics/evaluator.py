@@ -31,7 +31,7 @@ from optim.aerodynamics.operating_point import (
     SectionFlow,
     Surface,
 )
-from optim.aerodynamics.outer import Outer
+from optim.aerodynamics.outer import Outer, bury_base
 from optim.aerodynamics.results import build_flow
 from optim.aerodynamics.starter import start
 from optim.arrays import FloatArray, frozen
@@ -108,7 +108,8 @@ class SectionEvaluator:
     Parameters
     ----------
     nodes : (panels + 1, 2) array
-        Contour from the upper edge over the nose to the lower edge [chords].
+        Contour from the upper edge over the nose to the lower edge [chords]. A thin base at the
+        edge is closed for the outer flow (`outer.bury_base`).
 
     Attributes
     ----------
@@ -117,7 +118,7 @@ class SectionEvaluator:
     """
 
     def __init__(self, nodes: FloatArray) -> None:
-        self.outer = Outer(nodes)
+        self.outer = Outer(bury_base(nodes))
         self.solves = 0
         self._rows = np.zeros((self.outer.total, self.outer.total + 3))
         self._rows[:, : self.outer.total] = self.outer.influence

@@ -15,11 +15,37 @@ LATEST_TRANSITION = 0.98
 and turns at once in the near wake; left laminar to the edge, it has no solution that an iteration
 finds. Turbulent friction on the last 2 % adds less than 1 % to the least drag of a section."""
 
+BURIED_GAP = 0.02
+"""Gap of an edge of which the outer flow sees half [chords]. A thinner base is buried in the
+layers, whose displacement thickness at the edge is 0.5 to 2 % of the chord: outside them the flow
+closes behind it as behind a sharp edge. With a base of 0.25 % left as it is, the lift slope is 3.5
+% higher than with a sharp edge, and 5.7 % higher than measured over thirteen four- and five-digit
+sections (Abbott, von Doenhoff, Stivers, NACA Report 824, 1945); closed, 2.5 %."""
 
 LEAST_GAP = 1e-5
 """Edges are opened at least so far [chords]: the two edge nodes of a closed one would have the same
 equation. Lift, moment and speeds of exact closed sections stay within a tenth of the error of the
 panels (tests/aerodynamics)."""
+
+
+def check_contour(nodes: FloatArray) -> None:
+    """Raise ValueError unless the nodes are finite points."""
+    check_shape("nodes", nodes, {"panels + 1": None, "x, y": 2})
+    check_finite("nodes", nodes)
+
+
+def bury_base(nodes: FloatArray) -> FloatArray:
+    """Return the contour that the outer flow sees: a thin base is closed by a wedge.
+
+    The gap h becomes h r/(1 + r) with r = (h/BURIED_GAP)^2, and either side moves by half of the
+    difference times x: nothing at the nose, and at the edge little beside the layer.
+    """
+    check_contour(nodes)
+    base = nodes[0] - nodes[-1]
+    ratio = float(base @ base) / BURIED_GAP**2
+    upper = np.arange(len(nodes)) <= np.argmin(nodes[:, 0])
+    half = np.where(upper, 0.5, -0.5) * nodes[:, 0] / (1.0 + ratio)
+    return np.asarray(nodes - half[:, None] * base)
 
 
 def open_edge(nodes: FloatArray) -> tuple[FloatArray, FloatArray]:
@@ -58,12 +84,11 @@ class Outer:
     stream, influence : (n + w, 2), (n + w, n + w) array
         Speeds in unit streams at 0 and 90 degrees, and by the signed mass defect.
     gap : float
-        Gap of the edge [chords].
+        Gap of the edge that the outer flow sees [chords].
     """
 
     def __init__(self, nodes: FloatArray) -> None:
-        check_shape("nodes", nodes, {"panels + 1": None, "x, y": 2})
-        check_finite("nodes", nodes)
+        check_contour(nodes)
         self.x, self.y = open_edge(nodes)
         self.stream, self.influence, self.xw, self.yw = outer_flow(self.x, self.y)
         self.n = len(self.x)

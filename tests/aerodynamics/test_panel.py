@@ -15,6 +15,8 @@ from optim.aerodynamics.compressibility import (
 )
 from optim.aerodynamics.evaluator import SectionEvaluator
 from optim.aerodynamics.outer import Outer
+from optim.geometry.naca import naca_section
+from optim.geometry.spacing import panel_nodes
 from optim.outcomes import Outcome
 
 CASES = [
@@ -172,11 +174,11 @@ at 15 % and 3.4 % at 21 % against a fine panel method apart from this program.""
 
 @pytest.mark.published
 @pytest.mark.parametrize("number", list(TABLE_TOLERANCE))
-def test_velocities_of_the_four_digit_thickness_forms(number, naca, table):
+def test_velocities_of_the_four_digit_thickness_forms(number, table):
     """NACA Report 824, appendix. At 0.5 % chord the table is off by 0.016 (0012) to 0.07 (0006):
     there, as everywhere ahead of the edge, a separate panel method judges. At 95 % the answer hangs
     on how the blunt base is modelled: 0012 is 1.5 % below the table, so 2 % is asked there."""
-    outer = naca(number, 320).outer
+    outer = Outer(panel_nodes(naca_section(number), 320))
     upper = slice(outer.nose, None, -1)
     square = CubicSpline(outer.x[upper], speeds(outer, 0.0)[: outer.n][upper] ** 2)
     every = table("naca4_theory_velocity.csv", None)
@@ -253,13 +255,13 @@ def test_compressed_lift_follows_prandtl_and_glauert_at_small_lift(naca):
     assert ratio == pytest.approx(1 / math.sqrt(1 - 0.16), rel=0.015)
 
 
-def test_mass_defect_displaces_the_contour(naca):
+def test_mass_defect_displaces_the_contour():
     """Lighthill's equivalence: a source sheet d(q delta)/ds acts as a contour thicker by delta.
 
     The panel method on the thicker contour judges. There the speed is taken delta further out,
     where irrotational flow along a wall of curvature kappa is slower by kappa delta q.
     """
-    outer = naca("2412").outer
+    outer = Outer(panel_nodes(naca_section("2412"), 160))
     alpha = math.radians(3)
     q = speeds(outer, alpha)
     n, length = outer.n, outer.s[-1]
@@ -280,9 +282,9 @@ def test_mass_defect_displaces_the_contour(naca):
     assert worst < 0.02 * np.max(np.abs(change[middle]))
 
 
-def test_influence_does_not_depend_on_the_stagnation_point(naca):
+def test_influence_does_not_depend_on_the_stagnation_point():
     """Signed mass on one and the same matrix: the check above, at an angle with another sign."""
-    outer = naca("0012").outer
+    outer = Outer(panel_nodes(naca_section("0012"), 160))
     flipped = Outer(np.c_[outer.x, -outer.y][::-1].copy())
     n, w = outer.n, outer.total - outer.n
     order = np.r_[np.arange(n - 1, -1, -1), np.arange(n, outer.total)]
@@ -326,10 +328,10 @@ def test_wake_speeds_follow_the_exact_flow(name, exact_sections, solved):
         assert abs(velocity.real * along[1] - velocity.imag * along[0]) < 5e-3
 
 
-def test_sources_of_a_wake_behind_a_thin_section(naca):
+def test_sources_of_a_wake_behind_a_thin_section():
     """A wake that thickens evenly from a to b: u = (sigma/2 pi) ln((x - a)/(b - x)) on the axis,
     and a thin symmetric section in its plane does not answer (Katz & Plotkin, chapter 3)."""
-    outer = naca("0002").outer
+    outer = Outer(panel_nodes(naca_section("0002"), 160))
     flat = Outer(np.c_[outer.x, outer.y])
     n, sw = flat.n, flat.sw
     M = np.zeros(flat.total)
