@@ -22,7 +22,7 @@ from optim.aerodynamics.compressibility import (
 )
 from optim.aerodynamics.coupling import newton
 from optim.aerodynamics.forces import lift_force
-from optim.aerodynamics.laminar import GREATEST_H
+from optim.aerodynamics.laminar import GREATEST_H, LEAST_H
 from optim.aerodynamics.layout import NEVER
 from optim.aerodynamics.operating_point import (
     LEAST_LIFT_FOR_CENTRE_OF_PRESSURE,
@@ -64,9 +64,6 @@ EASY_LIFT = 0.3
 
 VISCOUS_SLOPE = 0.92
 """Lift of the coupled flow over that of the inviscid one, for a first angle [-]."""
-
-LEAST_TRUSTED_H = 1.95
-"""Least laminar shape factor of a solution that is given [-]."""
 
 REYNOLDS_RANGE = (1e4, 1e9)
 MACH_LIMIT = 0.8
@@ -336,15 +333,11 @@ class SectionEvaluator:
 
 
 def leaves_relations(state: State, n: int) -> bool:
-    """Whether a laminar station ended where the laminar relations only go on straight.
-
-    The edge's own acceleration may lower the shape factor a little below that of any similar layer
-    (2.07, flow into a sink); the straight continuation is trusted down to LEAST_TRUSTED_H.
-    """
+    """Whether a laminar station ended where the laminar relations are only a path."""
     k = np.where(np.arange(n) <= state.js, state.js - np.arange(n), np.arange(n) - state.js - 1)
     laminar = k < np.where(np.arange(n) <= state.js, state.turn[0], state.turn[1])
     H = np.exp(state.X[:n, 1] - state.X[:n, 0])[laminar]
-    return bool(H.size and (H.min() < LEAST_TRUSTED_H or H.max() > GREATEST_H))
+    return bool(H.size and (H.min() < LEAST_H or H.max() > GREATEST_H))
 
 
 def in_range(point: OperatingPoint) -> bool:

@@ -4,9 +4,11 @@ One-parameter relations between the shape factor H = delta*/theta and the energy
 the friction l = Re_theta cf/2 and the dissipation d = 2 CD Re_theta/H*, fitted to numerical
 solutions of f''' + f f'' + beta (1 - f'^2) = 0 on the attached and the separated branch.
 
-The fits hold for 2.1 <= H <= 20. From there they go on as powers of H with the value and slope of
-their end, within 6 % of the similar layers up to H = 40; below 2.1 they go on straight. Beyond 40,
-and well below 2.1, is only a path for the iteration: a solution that ends there is not accepted.
+The fits hold for 2.1 <= H <= 20. Below, down to 1.8, they go on as cubics, within 0.2 % of H* and l
+and 0.7 % of d: the family does not end at the flow into a sink (H = 2.07) but goes on to flows that
+accelerate faster, in which the layer loses fluid. Above, up to 40, they go on as powers of H,
+within 6 %. Further out is only a path for the iteration: a solution that ends there is not
+accepted.
 
 References
 ----------
@@ -22,14 +24,15 @@ import numpy as np
 from optim.aerodynamics.kernels import njit
 from optim.arrays import FloatArray
 
-LEAST_H = 2.1
-"""Least shape factor of the fits [-]."""
+FITTED_FROM, FITTED_TO = 2.1, 20.0
+"""Shape factors of the fits [-]."""
 
-FITTED_H = 20.0
-"""Greatest shape factor of the fits [-]."""
+LEAST_H, GREATEST_H = 1.8, 40.0
+"""Shape factors of a solution: as far as the relations were compared with similar layers [-]."""
 
-GREATEST_H = 40.0
-"""Greatest shape factor of a solution: as far as the powers of H were compared [-]."""
+BELOW = ((0.78218928, 1.69623219), (0.16659566, -1.35421930), (0.72189999, 0.89568465))
+"""What H*, l and d have beyond a straight line at H < FITTED_FROM: factors of the square and the
+cube of the distance; own least-squares fits to the similar layers there."""
 
 LEAST_ENERGY = 0.9
 """What is taken off H* before it is continued as a power of H [-]; chosen for H* at H = 40."""
@@ -87,11 +90,21 @@ def polynomial(coefficients: FloatArray, t: float) -> tuple[float, float]:
 
 
 @njit
-def power_beyond(H: float, value: float, slope: float) -> tuple[float, float]:
-    """Return a power of H with given value and slope at FITTED_H, and its slope."""
-    exponent = FITTED_H * slope / value
-    there = value * (H / FITTED_H) ** exponent
+def power_above(H: float, value: float, slope: float) -> tuple[float, float]:
+    """Return a power of H with given value and slope at FITTED_TO, and its slope."""
+    exponent = FITTED_TO * slope / value
+    there = value * (H / FITTED_TO) ** exponent
     return there, exponent * there / H
+
+
+@njit
+def cubic_below(
+    H: float, value: float, slope: float, square: float, cube: float
+) -> tuple[float, float]:
+    """Return a cubic with given value and slope at FITTED_FROM, straight below LEAST_H."""
+    x = max(H, LEAST_H) - FITTED_FROM
+    there = slope + x * (2.0 * square + 3.0 * cube * x)
+    return value + x * (slope + x * (square + cube * x)) + there * min(H - LEAST_H, 0.0), there
 
 
 @njit
@@ -112,26 +125,23 @@ def laminar_closure(H: float) -> tuple[float, float, float, float, float, float]
     dissipation, dissipation_H : float
         d = 2 CD Re_theta/H* and its slope [-].
     """
-    inside = min(max(H, LEAST_H), FITTED_H)
-    beyond = H - inside
-    t = 1.0 / (inside - 1.0)
+    fitted = min(max(H, FITTED_FROM), FITTED_TO)
+    t = 1.0 / (fitted - 1.0)
     ratio, ratio_t = polynomial(ENERGY_FIT, t)
-    energy = ratio * (inside - 1.0)
+    energy = ratio * (fitted - 1.0)
     energy_H = ratio - ratio_t * t
     friction, friction_t = polynomial(FRICTION_FIT, t)
     friction_H = -friction_t * t * t
     dissipation, dissipation_t = polynomial(DISSIPATION_FIT, t)
     dissipation_H = -dissipation_t * t * t
-    if beyond > 0.0:
-        energy, energy_H = power_beyond(H, energy - LEAST_ENERGY, energy_H)
-        friction, friction_H = power_beyond(H, friction, friction_H)
-        dissipation, dissipation_H = power_beyond(H, dissipation, dissipation_H)
-        return energy + LEAST_ENERGY, energy_H, friction, friction_H, dissipation, dissipation_H
-    return (
-        energy + energy_H * beyond,
-        energy_H,
-        friction + friction_H * beyond,
-        friction_H,
-        dissipation + dissipation_H * beyond,
-        dissipation_H,
-    )
+    if H > FITTED_TO:
+        energy, energy_H = power_above(H, energy - LEAST_ENERGY, energy_H)
+        energy += LEAST_ENERGY
+        friction, friction_H = power_above(H, friction, friction_H)
+        dissipation, dissipation_H = power_above(H, dissipation, dissipation_H)
+    elif H < FITTED_FROM:
+        E, F, D = BELOW
+        energy, energy_H = cubic_below(H, energy, energy_H, E[0], E[1])
+        friction, friction_H = cubic_below(H, friction, friction_H, F[0], F[1])
+        dissipation, dissipation_H = cubic_below(H, dissipation, dissipation_H, D[0], D[1])
+    return energy, energy_H, friction, friction_H, dissipation, dissipation_H

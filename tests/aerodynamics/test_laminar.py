@@ -12,7 +12,8 @@ import pytest
 from scipy.integrate import cumulative_simpson, solve_bvp
 
 from optim.aerodynamics.laminar import (
-    FITTED_H,
+    FITTED_FROM,
+    FITTED_TO,
     GREATEST_H,
     LEAST_H,
     STAGNATION_H,
@@ -107,7 +108,7 @@ def test_stagnation_state_of_the_closure(layers):
 
 def test_closure_against_every_layer(layers):
     """The accuracy that the issue asks for: H* 0.1 %, friction 6e-4, dissipation 0.3 %."""
-    near = [layer for layer in layers if layer.H < FITTED_H]
+    near = [layer for layer in layers if layer.H < FITTED_TO]
     assert len(near) == len(ATTACHED) + len(SEPARATED) - 1
     for layer in near:
         energy, _, friction, _, dissipation, _ = laminar_closure(layer.H)
@@ -132,22 +133,52 @@ def test_slopes(H, differences):
     assert np.array(values[1::2]) == pytest.approx(found[:, 0], rel=1e-6, abs=1e-8)
 
 
-@pytest.mark.parametrize(("end", "beyond"), [(LEAST_H, -0.3), (LEAST_H, -0.02)])
-def test_the_closure_goes_on_straight_below_its_range(end, beyond):
-    inside, value = laminar_closure(end), laminar_closure(end + beyond)
+def test_the_closure_goes_on_straight_below_its_range():
+    inside, value = laminar_closure(LEAST_H), laminar_closure(LEAST_H - 0.3)
     for k in (0, 2, 4):
-        assert value[k] == pytest.approx(inside[k] + beyond * inside[k + 1], rel=1e-13)
+        assert value[k] == pytest.approx(inside[k] - 0.3 * inside[k + 1], rel=1e-13)
         assert value[k + 1] == inside[k + 1]
 
 
-def test_the_closure_goes_on_smoothly_above_its_fits():
-    below, above = (laminar_closure(FITTED_H + e) for e in (-1e-9, 1e-9))
+@pytest.mark.parametrize("end", [FITTED_FROM, FITTED_TO, LEAST_H])
+def test_the_closure_goes_on_smoothly_beyond_its_fits(end):
+    below, above = (laminar_closure(end + e) for e in (-1e-9, 1e-9))
     assert below == pytest.approx(above, rel=1e-7)
+
+
+@pytest.mark.parametrize("a", [0.0, -0.2, -0.5, -0.8, -0.99])
+def test_closure_against_layers_that_accelerate_faster_than_into_a_sink(a):
+    """f''' + a f f'' + 1 - f'^2 = 0, solved here: a = 0 is the flow into a sink (Pohlhausen, 1921:
+    f' = 3 tanh^2(eta/sqrt 2 + artanh sqrt(2/3)) - 2), a < 0 a layer that thins yet faster."""
+
+    def slopes(_, y):
+        f, U, shear = y[:3]
+        change = -a * f * shear - 1 + U**2
+        return np.array([U, shear, change, 1 - U, U - U**2, U - U**3, shear**2])
+
+    def ends(wall, out):
+        return np.r_[wall[[0, 1, 3, 4, 5, 6]], out[1] - 1]
+
+    eta = np.linspace(0.0, 12.0, 400)
+    sink = 3 * np.tanh(eta / np.sqrt(2) + np.arctanh(np.sqrt(2 / 3))) ** 2 - 2
+    shear = np.gradient(sink, eta)
+    parts = (sink, 1 - sink, sink - sink**2, sink - sink**3, shear**2)
+    f, *sums = (cumulative_simpson(part, x=eta, initial=0) for part in parts)
+    found = solve_bvp(slopes, ends, eta, np.array([f, sink, shear, *sums]), tol=1e-8)
+    assert found.success
+    if a == 0.0:
+        assert found.sol(eta)[1] == pytest.approx(sink, abs=1e-6)
+    delta, theta, full, work = found.sol(12.0)[3:]
+    energy, _, friction, _, dissipation, _ = laminar_closure(delta / theta)
+    assert LEAST_H < delta / theta < FITTED_FROM
+    assert energy == pytest.approx(full / theta, rel=2e-3)
+    assert friction == pytest.approx(found.sol(0.0)[2] * theta, rel=2e-3)
+    assert dissipation == pytest.approx(2 * work * theta**2 / full, rel=7e-3)
 
 
 def test_continuation_against_similar_layers(layers):
     """The promise of the module docstring: within 6 % of the layers themselves up to H = 40."""
-    far = [layer for layer in layers if layer.H > FITTED_H]
+    far = [layer for layer in layers if layer.H > FITTED_TO]
     assert max(layer.H for layer in far) == GREATEST_H
     for layer in far:
         energy, _, friction, _, dissipation, _ = laminar_closure(layer.H)
