@@ -1,0 +1,1 @@
+"""One module a source, named as its record: ``compare(record)`` returns its comparison."""
