@@ -1,7 +1,4 @@
-"""A source as a figure: measured points with their scatter, the computed line, a question a panel.
-
-Where the computed values belong to single sections, conditions or stations the line joins them.
-"""
+"""A source as a figure: measured points with their scatter beside what is computed."""
 
 from __future__ import annotations
 
@@ -21,6 +18,9 @@ COLOURS = (UPPER, LOWER, AMBER)
 """Of the series of one panel: the measured points and the line computed for them share one."""
 
 MARKS = ("o", "s", "^")
+
+FEW = 30
+"""Computed values up to this number are marked on their line, so that gaps are seen."""
 
 HEIGHT = 2.9
 """Of a row of panels [inch]."""
@@ -82,7 +82,12 @@ def _draw(axes: Axes, panel: Panel) -> None:
         )  # fmt: skip
     for series, colour in zip(panel.computed, COLOURS, strict=False):
         order = np.argsort(series.x, kind="stable")
-        axes.plot(series.x[order], series.y[order], color=colour, lw=1.2, label=series.label)
+        axes.plot(
+            series.x[order], series.y[order], color=colour, lw=0.0 if panel.names else 1.2,
+            marker="x" if panel.names else "." if len(order) <= FEW else "", label=series.label,
+        )  # fmt: skip
+    if panel.names:
+        axes.set_xticks(range(len(panel.names)), panel.names, rotation=90)
     if panel.downwards:
         axes.invert_yaxis()
     title(axes, panel.title)

@@ -119,7 +119,10 @@ class Series:
 
 @dataclass(frozen=True)
 class Panel:
-    """What is drawn over one pair of axes: measured points, computed lines."""
+    """What is drawn over one pair of axes: measured points, computed lines.
+
+    With `names` the places along x are single sections, and the computed values are points, too.
+    """
 
     title: str
     x: str
@@ -127,6 +130,7 @@ class Panel:
     measured: tuple[Series, ...]
     computed: tuple[Series, ...]
     downwards: bool = False
+    names: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True)

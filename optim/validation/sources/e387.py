@@ -121,7 +121,7 @@ def _bubbles(record: Record, flown: Model) -> tuple[list[Case], list[Panel]]:
     main = table["Re"] == REYNOLDS
     alpha = table["alpha_deg"][main]
     panel = Panel(
-        "Where does the bubble start and end, Re 2e5?", "alpha deg", "x/c",
+        "Where is the bubble, Re 2e5?", "alpha deg", "x/c",
         tuple(
             Series(f"measured {name}", alpha, table[column][main], 0.03)
             for name, column in (("start", "x_separation"), ("end", "x_reattachment"))
@@ -154,7 +154,7 @@ def _trend(record: Record, flown: Model) -> tuple[list[Case], list[Panel]]:
             cases.append(judge(record, "moment", moment, flow.cm_quarter))
     at = np.array(TREND) / 1e3
     panel = Panel(
-        "Does drag at 5 deg follow the Reynolds number?", "Re in thousands", "cd",
+        "Does drag at 5 deg follow Re?", "Re in thousands", "cd",
         (Series("measured", at, np.array(measured), 0.0005),),
         (Series("computed", at, np.array(computed)),),
     )  # fmt: skip

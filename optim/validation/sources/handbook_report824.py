@@ -122,7 +122,7 @@ def _rank_correlation(a: FloatArray, b: FloatArray) -> float:
 
 def _panels(record: Record, rows: list[Row]) -> tuple[Panel, ...]:
     places = np.arange(len(rows), dtype=np.float64)
-    names = " ".join(f"{i}: {row.section[5:]}" for i, row in enumerate(rows))
+    names = tuple(row.section[5:] for row in rows)
     panels = []
     for key in COLUMNS:
         measured, computed = _pair(rows, key)
@@ -130,10 +130,10 @@ def _panels(record: Record, rows: list[Row]) -> tuple[Panel, ...]:
         bar = allowed.scatter * (float(np.mean(measured)) if allowed.measure == "relative" else 1)
         panels.append(
             Panel(
-                f"Does the {allowed.quantity} agree, section by section?", names,
+                "Does it agree, section by section?", "section",
                 f"{allowed.quantity} {allowed.unit}".removesuffix(" -"),
                 (Series("measured", places, measured, bar),),
-                (Series("computed", places, computed),),
+                (Series("computed", places, computed),), names=names,
             )
         )  # fmt: skip
     return tuple(panels)

@@ -33,10 +33,13 @@ def compare(record: Record) -> Comparison:
             )
         )  # fmt: skip
     places = np.arange(len(names), dtype=np.float64)
-    label = " ".join(f"{i}: {name.split()[1]}" for i, name in enumerate(names))
+    label = tuple(
+        f"{name.split()[1]}, {reynolds / 1e6:g}e6"
+        for name, reynolds in zip(names, table["reynolds"], strict=True)
+    )
     panel = Panel(
-        "Does the least drag agree, section by section?", label, "cd",
+        "Does the least drag agree, section by section?", "section, Re", "cd",
         (Series("measured", places, table["cd_min"], 0.0003),),
-        (Series("computed", places, np.array(found)),),
+        (Series("computed", places, np.array(found)),), names=label,
     )  # fmt: skip
     return Comparison(record, tuple(cases), (panel,))
