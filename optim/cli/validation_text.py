@@ -26,6 +26,7 @@ def validation_text(document: Document) -> str:
         [
             *parts,
             *_missed(document["cases"]),
+            _overview(document["sources"]),
             _count(document["summary"]),
             f"{len(document['left_out'])} sets are left out, most for their terms of use; --json "
             "names them, and the terms of those that are here.",
@@ -84,6 +85,16 @@ def _missed(cases: list[Document]) -> list[str]:
         reasons.setdefault(case["reason"], []).append(f"{case['section']} {case['quantity']}")
     lines = [f"  {'; '.join(names)}:\n    {reason}" for reason, names in reasons.items()]
     return ["Not reproduced, and why:", *lines, ""]
+
+
+def _overview(sources: list[Document]) -> str:
+    rows = [
+        [one["title"], *[str(one[name]) for name in ("reproduced", "not reproduced", "shown")]]
+        for one in sources
+    ]
+    width = max(len(row[0]) for row in rows)
+    head = ["source".ljust(width), "reproduced", "not reproduced", "shown"]
+    return table(head, [[row[0].ljust(width), *row[1:]] for row in rows])
 
 
 def _count(counts: dict[str, int]) -> str:
