@@ -58,7 +58,9 @@ def test_looking_at_a_run_waits_for_no_compiler_and_no_search(process, run_file,
         assert loaded(process, *words).isdisjoint(HEAVY), words
 
 
-@pytest.mark.parametrize("words", [("--help",), ("check", "--help"), ("run", "--help")])
+@pytest.mark.parametrize(
+    "words", [("--help",), ("check", "--help"), ("run", "--help"), ("validate", "--help")]
+)
 def test_help_loads_no_library_of_numbers(process, words):
     heavy = {*HEAVY, "numpy", "scipy", "h5py", "yaml", "pint", "rich"}  # typer has pydantic
     assert loaded(process, *words).isdisjoint(heavy)
@@ -80,7 +82,7 @@ def test_command_computes_on_one_thread_as_the_workers_do(process, door):
 def test_python_m_optim_is_the_command(process):
     done = process("--help")
     assert done.returncode == 0
-    for name in ("template", "check", "run", "resume", "status", "front", "analyse", "fit"):
+    for name in ("template", "check", "run", "resume", "status", "front", "analyse", "validate"):
         assert name in done.stdout
 
 
