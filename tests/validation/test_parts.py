@@ -1,13 +1,14 @@
 """The parts of a comparison, against cases whose answer is known."""
 
 import math
+from dataclasses import replace
 
 import numpy as np
 import pytest
 from scipy.stats import spearmanr
 
 from optim.aerodynamics.operating_point import OperatingPoint
-from optim.validation.case import FROM_MEMORY, half_of, judge
+from optim.validation.case import FROM_MEMORY, NO_REASON, half_of, judge
 from optim.validation.flight import Model, mean_error, naca, on_side, pressure
 from optim.validation.prescribed import march
 from optim.validation.record import read_record
@@ -44,8 +45,10 @@ class TestJudge:
         assert judge(record, "cl_max", 1.6, 9.0, shown=True).verdict == "shown"
 
     def test_reason_of_a_condition_goes_before_that_of_the_quantity(self, record):
-        twelve = judge(record, "drag_at_angle", 1.0, 2.0, of="12 deg").reason
-        assert twelve == record.reasons["drag_at_angle 12 deg"]
+        told = replace(record, reasons={"drag_at_angle 12 deg": "near", "drag_at_angle": "far"})
+        found = [judge(told, "drag_at_angle", 1.0, 2.0, of=f"{a} deg").reason for a in (12, 15)]
+        assert found == ["near", "far"]
+        assert judge(told, "cl_max", 1.0, 2.0).reason == NO_REASON
 
     def test_differences_keep_their_sign_and_relative_errors_the_measured_value(self, record):
         assert judge(record, "lift_slope", 0.108, 0.107).error == pytest.approx(-0.001)

@@ -28,20 +28,20 @@ PLATEAU = 0.8
 
 
 def compare(record: Record) -> Comparison:
-    """Compare pressures at the lift that the measured pressures have, and at the angle for show."""
+    """Compare pressures at the measured pressures' lift, and at the computed peak for show."""
     table, side = record.columns(), np.array(record.words("surface"))
     lift = _lift(table, side)
     section = naca("4412")
     (matched,) = section.lifts(POINT, np.array([lift]))
-    (at_angle,) = section.angles(POINT, [math.degrees(ANGLE)])
+    peak = section.evaluator.maximum_lift(POINT)
     cases = [
         _pressures(record, table, side, flow, key, of)
         for flow, key, of in (
             (matched, "pressure", f"{lift:.3f}"),
-            (at_angle, "pressure_at_angle", ""),
+            (peak, "pressure_at_peak", ""),
         )
     ]
-    drawn = matched if matched.converged else at_angle
+    drawn = matched if matched.converged else peak
     alpha = section.degrees(matched.alpha)
     cases += [
         judge(record, "alpha", math.degrees(ANGLE), alpha),
@@ -49,7 +49,7 @@ def compare(record: Record) -> Comparison:
     ]
     panel = Panel(
         "Do pressures agree at equal lift?" if matched.converged
-        else "Do pressures agree at 13.87 deg (the lift is not reached)?", "x/c", "cp",
+        else "Do pressures agree at the peak (the lift is not reached)?", "x/c", "cp",
         tuple(
             Series(f"measured, {name} side", table["x_c"][side == name], table["cp"][side == name])
             for name in SIDES
