@@ -1,7 +1,8 @@
 """Sweeps over the angle of attack: what a polar says, and the peak of the lift.
 
 Both walk one section's flows in a fixed order, so that the same section has the same numbers. The
-maximum lift is a computed peak, bracketed on both sides: never the last point that converged.
+maximum lift is a computed peak, bracketed on both sides, or the lift at which the suction of the
+nose reaches its limit (suction_limit.py) if that comes first: never the last point that converged.
 """
 
 from __future__ import annotations
@@ -15,6 +16,7 @@ from typing import TYPE_CHECKING, Literal
 import numpy as np
 
 from optim.aerodynamics.operating_point import QUARTER_CHORD, OperatingPoint, SectionFlow
+from optim.aerodynamics.suction_limit import suction_excess
 from optim.outcomes import Outcome
 
 if TYPE_CHECKING:
@@ -38,6 +40,18 @@ PEAK_RESOLVED = 2e-4
 
 PEAK_REFINEMENTS = 4
 """Refinements of the bracket at most."""
+
+BACK_STEPS = 6
+"""Steps back at most, to below a peak or a limit that lies ahead of the walk's beginning."""
+
+LIMIT_REFINEMENTS = 6
+"""Refinements at the suction limit at most."""
+
+LIMIT_MARGIN = 0.01
+"""Share of the bracket by which a refinement stays below the angle expected [-]."""
+
+LIMIT_RESOLVED = 2e-3
+"""The suction limit is met when the pressure difference is within this share of it [-]."""
 
 ATTACHED_SEPARATION = 0.95
 """A flow counts as attached while separation lies behind this x/c [-]; common practice."""
@@ -64,7 +78,8 @@ class Derived:
     slope_range : (float, float) or None
         That range of angles [rad].
     cl_max, alpha_cl_max : float
-        Peak of the lift and its angle [-, rad]; nan if the sweep passed no peak.
+        Greatest lift and its angle [-, rad], at a peak or at the suction limit, whichever comes
+        first; nan if the sweep passed neither.
     aerodynamic_centre_x : float
         0.25 - dcm/dcl over the same range [x/c].
     cm_aerodynamic_centre, cm_zero_lift : float
@@ -137,12 +152,14 @@ def derive(flows: Sequence[SectionFlow]) -> Derived:
     cl = np.array([flow.cl for flow in good])
     cm = np.array([flow.cm_quarter for flow in good])
     attached = attached_range(good)
-    peak = _peak(alpha, cl)
+    peak, limit = _peak(alpha, cl), _limited(good)
+    if limit is not None and not limit[1] > peak[1]:
+        peak = limit
     derived = replace(
         Derived(),
         cl_max=peak[0],
         alpha_cl_max=peak[1],
-        stall=stall_kind(good, peak[1]),
+        stall="leading_edge" if peak is limit else stall_kind(good, peak[1]),
         x_cp_range=_span([flow.x_cp for flow in good]),
         low_drag_range=low_drag_range(good),
     )
@@ -197,6 +214,16 @@ def _peak(alpha: np.ndarray, cl: np.ndarray) -> tuple[float, float]:
     return float(a * d * d + b * d + c), float(top)
 
 
+def _limited(flows: Sequence[SectionFlow]) -> tuple[float, float] | None:
+    """Lift and angle at which the suction first passes its limit; None if it does not."""
+    for a, b in pairwise(flows):
+        low, high = suction_excess(a), suction_excess(b)
+        if low <= 0.0 < high and b.alpha > 0.0:
+            share = low / (low - high)
+            return a.cl + share * (b.cl - a.cl), a.alpha + share * (b.alpha - a.alpha)
+    return None
+
+
 def vertex(x: np.ndarray, y: np.ndarray) -> float:
     """Return the place of the top of the parabola through three points whose middle is highest."""
     left = (y[1] - y[0]) / (x[1] - x[0])
@@ -210,6 +237,7 @@ def vertex(x: np.ndarray, y: np.ndarray) -> float:
 def stall_kind(flows: Sequence[SectionFlow], alpha_peak: float) -> StallKind:
     """Return the kind of stall from what is separated at the flow just past the peak.
 
+    Where the suction limit comes before the peak, the stall counts as one of the leading edge.
     Trailing-edge stall: turbulent separation has crept forward from the edge. Leading-edge stall:
     separation starts within the first tenth without it. Thin-aerofoil stall: a bubble of more than
     a tenth of the chord precedes the peak. Mixed: more than one of these.
@@ -268,8 +296,8 @@ def maximum_lift(evaluator: SectionEvaluator, point: OperatingPoint) -> SectionF
     Returns
     -------
     SectionFlow
-        CONVERGED at the peak. NO_PEAK if the walk ended before the lift fell, LOCAL_SONIC if the
-        flow turned sonic first; neither carries a force.
+        CONVERGED at the peak or at the suction limit. NO_PEAK if the walk ended before either,
+        LOCAL_SONIC if the flow turned sonic first; neither carries a force.
     """
     search = _PeakSearch(evaluator, point)
     flow = search.run()
@@ -286,12 +314,18 @@ class _PeakSearch:
         self.passed: list[tuple[SectionFlow, State]] = []
 
     def run(self) -> SectionFlow:
-        """Walk up to a fall of the lift, then close in on the peak."""
+        """Walk up to a fall of the lift or to the suction limit, then close in on it."""
         ending = self._walk()
         if ending is not None:
             return SectionFlow(self.point, ending, self.evaluator.panels)
-        best = self._refine()
+        best = self._refine() if self._fell() else self.passed[-1][0]
+        if suction_excess(best) > 0.0:
+            best = self._at_limit()
         return replace(best, point=self.point)
+
+    def _fell(self) -> bool:
+        """Whether the last flow has less lift than the one before it."""
+        return len(self.passed) > 1 and self.passed[-1][0].cl < self.passed[-2][0].cl
 
     def _solve(self, alpha: float, near: State | None) -> tuple[SectionFlow, State | None]:
         flow, state = self.evaluator.solve(
@@ -301,7 +335,7 @@ class _PeakSearch:
         return flow, state
 
     def _walk(self) -> Outcome | None:
-        """Step up until the lift falls; None if it did."""
+        """Step up until the lift falls or the suction passes its limit; None if it did."""
         outer = self.evaluator.outer
         alpha = outer.angle_of_lift(PEAK_START_LIFT)
         last = outer.angle_of_lift(0.0) + PEAK_LAST_ANGLE
@@ -312,7 +346,7 @@ class _PeakSearch:
                 return Outcome.LOCAL_SONIC
             if flow.converged and state is not None:
                 self.passed.append((flow, state))
-                if len(self.passed) > 1 and flow.cl < self.passed[-2][0].cl:
+                if self._fell() or suction_excess(flow) > 0.0:
                     return self._bracketed()
             elif not self.passed:
                 return flow.outcome
@@ -328,19 +362,37 @@ class _PeakSearch:
         return Outcome.NO_PEAK
 
     def _bracketed(self) -> Outcome | None:
-        """Make sure that a flow lies below the peak as well; one that fell at once goes back."""
+        """Make sure that a flow lies below the end as well; a walk that began past it goes back."""
         if len(self.passed) > 2:
             return None
-        low, state = self.passed[0]
-        for _ in range(3):
+        for _ in range(BACK_STEPS):
+            low, state = self.passed[0]
+            rises = len(self.passed) > 1 and low.cl < self.passed[1][0].cl
+            if rises and suction_excess(low) <= 0.0:
+                return None
             flow, state_low = self._solve(low.alpha - PEAK_STEP, state)
             if not flow.converged or state_low is None:
                 return Outcome.NO_PEAK
             self.passed.insert(0, (flow, state_low))
-            if flow.cl < self.passed[1][0].cl:
-                return None
-            low, state = self.passed[0]
         return Outcome.NO_PEAK
+
+    def _at_limit(self) -> SectionFlow:
+        """Close in on the angle at which the suction reaches its limit, from both sides."""
+        over = next(k for k, (flow, _) in enumerate(self.passed) if suction_excess(flow) > 0.0)
+        (low, state), (high, _) = self.passed[over - 1 : over + 1]
+        for _ in range(LIMIT_REFINEMENTS):
+            less, more = suction_excess(low), suction_excess(high)
+            if -less < LIMIT_RESOLVED:
+                break
+            alpha = low.alpha + (high.alpha - low.alpha) * less / (less - more)
+            flow, new = self._solve(alpha - LIMIT_MARGIN * (high.alpha - low.alpha), state)
+            if not flow.converged or new is None:
+                break
+            if suction_excess(flow) > 0.0:
+                high = flow
+            else:
+                low, state = flow, new
+        return low
 
     def _refine(self) -> SectionFlow:
         """Close in on the peak by parabolas through the three flows about it."""
