@@ -21,6 +21,7 @@ from optim.aerodynamics.compressibility import compressed_speed
 from optim.aerodynamics.forces import lift_force
 from optim.aerodynamics.interval import HELD
 from optim.aerodynamics.kernels import njit
+from optim.aerodynamics.lapack import TRANSPOSED, factorise, substitute
 from optim.aerodynamics.layer import SLOPES, TERMS
 from optim.aerodynamics.layout import (
     ANGLE,
@@ -147,6 +148,33 @@ def stagnation_row(rows: Rows, q: FloatArray, s: FloatArray, js: int, s0: float)
     for j in range(len(row)):
         row[j] = (1.0 - tau) * rows.V[js, j] + tau * rows.V[js + 1, j]
     row[PLACE] += (q[js + 1] - q[js]) / step
+
+
+@njit
+def all_finite(A: FloatArray) -> bool:
+    """Whether all entries are finite numbers."""
+    lost = 0
+    for row in A:
+        for j in range(len(row)):
+            lost += 0 if abs(row[j]) < math.inf else 1
+    return lost == 0
+
+
+@njit
+def solve_rows(A: FloatArray, z: FloatArray) -> bool:
+    """Fill the changes z of the global unknowns, with 1 for the right side; False if singular.
+
+    The rows are overwritten.
+    """
+    for i in range(len(A)):
+        z[i] = -A[i, RIGHT]
+    z[RIGHT] = 1.0
+    pivots = np.empty(len(A), np.int32)
+    # the equations are the rows, which LAPACK takes for columns
+    if not factorise(A, pivots):
+        return False
+    substitute(A, pivots, z.reshape((1, len(z))), TRANSPOSED)
+    return True
 
 
 @njit
@@ -294,9 +322,8 @@ def newton(
         held = why[UPPER] == HELD or why[LOWER] == HELD
         if residual < tolerance and change < math.sqrt(tolerance) and not held:
             return True, js, alpha, iteration, residual
-        if not (residual < GREATEST_RESIDUAL and np.all(np.isfinite(rows.A))):
+        if not (residual < GREATEST_RESIDUAL and all_finite(rows.A) and solve_rows(rows.A, z)):
             return False, js, alpha, iteration, residual
-        z[: nt + 2] = np.linalg.solve(rows.A[:, : nt + 2], -rows.A[:, RIGHT])
         bound = LARGEST_STEP / (1.0 + since / CAUTION)
         factor, change = limit_step(layers, rows, z, js, n, turn, bound)
         if not change < GREATEST_CHANGE:
