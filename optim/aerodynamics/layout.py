@@ -33,6 +33,8 @@ from __future__ import annotations
 import math
 from typing import NamedTuple
 
+import numpy as np
+
 from optim.aerodynamics.compressibility import compressed_speed
 from optim.aerodynamics.kernels import njit
 from optim.aerodynamics.laminar import STAGNATION_H, STAGNATION_THETA
@@ -129,12 +131,9 @@ def outer_speed(
     """Fill the signed speeds for an angle and a mass defect."""
     c = math.cos(alpha)
     sn = math.sin(alpha)
+    blown = np.dot(influence, M)
     for i in range(len(q)):
-        total = c * stream[i, 0] + sn * stream[i, 1]
-        row = influence[i]
-        for j in range(len(M)):
-            total += row[j] * M[j]
-        q[i] = total
+        q[i] = c * stream[i, 0] + sn * stream[i, 1] + blown[i]
 
 
 @njit

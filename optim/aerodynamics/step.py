@@ -8,6 +8,8 @@ from __future__ import annotations
 
 import math
 
+import numpy as np
+
 from optim.aerodynamics.kernels import njit
 from optim.aerodynamics.layer import LAMINAR, TURBULENT, WAKE
 from optim.aerodynamics.layout import ANGLE, RIGHT, Layers, Rows
@@ -60,22 +62,6 @@ def keep_shape(
 
 
 @njit
-def station_change(rows: Rows, z: FloatArray, i: int) -> tuple[float, float, float]:
-    """Return the changes of t, s and q at a station by those of the global unknowns."""
-    rowT = rows.T[i]
-    rowS = rows.S[i]
-    rowV = rows.V[i]
-    dt = 0.0
-    ds = 0.0
-    dq = 0.0
-    for j in range(len(z)):
-        dt += rowT[j] * z[j]
-        ds += rowS[j] * z[j]
-        dq += rowV[j] * z[j]
-    return dt, ds, dq
-
-
-@njit
 def limit_step(
     layers: Layers,
     rows: Rows,
@@ -92,10 +78,14 @@ def limit_step(
     """
     factor = 1.0
     largest = 0.0
+    change_t = np.dot(rows.T, z)
+    change_s = np.dot(rows.S, z)
+    change_q = np.dot(rows.V, z)
     for i in range(len(layers.M)):
-        dt, ds, dq = station_change(rows, z, i)
-        if i < n and is_laminar(i, js, turn):
-            ds = 0.0
+        dt = change_t[i]
+        dq = change_q[i]
+        # the rows of S are only kept up where a layer has a shear stress
+        ds = 0.0 if i < n and is_laminar(i, js, turn) else change_s[i]
         rows.T[i, RIGHT] = dt
         rows.S[i, RIGHT] = ds
         rows.V[i, RIGHT] = dq
