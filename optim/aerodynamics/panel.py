@@ -24,11 +24,27 @@ ed., Cambridge 2001, chapter 10 (integrals of linear panels).
 from __future__ import annotations
 
 import math
+from typing import NamedTuple
 
 import numpy as np
 
 from optim.aerodynamics.kernels import njit
 from optim.arrays import FloatArray
+
+OUTWARD = -0.5 * math.pi
+DOWNSTREAM = 0.0
+"""Least angle from a panel's own direction: the angles of its sources are cut along the outward
+normal, where no node sees the cut, and those of the wake's along the wake."""
+
+
+class Panel(NamedTuple):
+    """First end, unit tangent and length of a panel."""
+
+    x: float
+    y: float
+    tx: float
+    ty: float
+    length: float
 
 
 @njit
@@ -45,133 +61,178 @@ def panel_frames(
 
 
 @njit
-def panel_integrals(
-    X1: float, X2: float, Y: float, L: float, g1: float, g2: float, a1: float, a2: float
-) -> tuple[float, float, float]:
-    """Return the streamfunction integrals of one panel at one point.
+def sights(
+    ax: FloatArray, ay: FloatArray, x: FloatArray, y: FloatArray
+) -> tuple[FloatArray, FloatArray]:
+    """Return ln r and the direction of each point x, y (columns) from each point ax, ay (rows).
+
+    A panel needs those from its two ends, and two panels meet at an end.
+    """
+    logs = np.zeros((len(ax), len(x)))
+    angles = np.zeros((len(ax), len(x)))
+    for j in range(len(ax)):
+        for i in range(len(x)):
+            dx = x[i] - ax[j]
+            dy = y[i] - ay[j]
+            logs[j, i] = 0.5 * math.log(dx * dx + dy * dy)
+            angles[j, i] = math.atan2(dy, dx)
+    return logs, angles
+
+
+@njit
+def mutual_sights(x: FloatArray, y: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Return ln r and the direction of each point from each other; zero from itself."""
+    n = len(x)
+    logs = np.zeros((n, n))
+    angles = np.zeros((n, n))
+    for j in range(n):
+        for i in range(j + 1, n):
+            dx = x[i] - x[j]
+            dy = y[i] - y[j]
+            logs[j, i] = 0.5 * math.log(dx * dx + dy * dy)
+            logs[i, j] = logs[j, i]
+            angles[j, i] = math.atan2(dy, dx)
+            angles[i, j] = angles[j, i] - math.copysign(math.pi, angles[j, i])
+    return logs, angles
+
+
+@njit
+def on_branch(angle: float, least: float) -> float:
+    """Return an angle, within a turn of it, in [least, least + 2 pi)."""
+    # no branches, so that loops of it are vectorised
+    up = 2.0 * math.pi if angle < least else 0.0
+    down = 2.0 * math.pi if angle >= least + 2.0 * math.pi else 0.0
+    return angle + up - down
+
+
+@njit
+def source_row(
+    panel: Panel,
+    x: FloatArray,
+    y: FloatArray,
+    g: FloatArray,
+    angles: FloatArray,
+    least: float,
+    out: FloatArray,
+) -> None:
+    """Fill int theta ds of a panel at all points (arguments: see `vortex_rows`)."""
+    ax, ay, tx, ty, L = panel
+    g1, g2 = g
+    d1, d2 = angles
+    own = math.atan2(ty, tx)
+    for i in range(len(x)):
+        X1 = (x[i] - ax) * tx + (y[i] - ay) * ty
+        Y = (y[i] - ay) * tx - (x[i] - ax) * ty
+        a1 = on_branch(d1[i] - own, least)
+        a2 = on_branch(d2[i] - own, least)
+        out[i] = X1 * a1 - (X1 - L) * a2 + Y * (g1[i] - g2[i])
+
+
+@njit
+def vortex_rows(
+    panel: Panel,
+    x: FloatArray,
+    y: FloatArray,
+    g: FloatArray,
+    angles: FloatArray,
+    least: float,
+    plain: FloatArray,
+    second: FloatArray,
+) -> None:
+    """Fill int ln r ds and int (s/L) ln r ds of a panel at all points.
 
     Parameters
     ----------
-    X1, X2, Y : float
-        Place of the point from the first and the second end, along and across the panel.
-    L : float
-        Length of the panel.
-    g1, g2 : float
-        ln r from the two ends (any finite value where r = 0).
-    a1, a2 : float
-        Angles of the point from the two ends, on one continuous branch.
-
-    Returns
-    -------
-    first, second, source : float
-        int (1 - s/L) ln r ds, int (s/L) ln r ds and int theta ds.
+    panel : Panel
+        Where it lies.
+    x, y : (n,) array
+        The points.
+    g, angles : (2, n) array
+        ln r and direction of the points from the two ends (any finite value where r = 0).
+    least : float
+        Least angle on the branch of the angles from the panel's own direction.
+    plain, second : (n,) array
+        Filled.
     """
-    r1 = X1 * X1 + Y * Y
-    r2 = X2 * X2 + Y * Y
-    plain = X1 * g1 - X2 * g2 - L + Y * (a2 - a1)
-    moment = 0.5 * (r2 * g2 - r1 * g1) - 0.25 * (r2 - r1) + X1 * plain
-    second = moment / L
-    source = X1 * a1 - X2 * a2 + Y * (g1 - g2)
-    return plain - second, second, source
+    ax, ay, tx, ty, L = panel
+    g1, g2 = g
+    d1, d2 = angles
+    own = math.atan2(ty, tx)
+    # two loops with few arrays each: with more of them the compiler does not vectorise
+    for i in range(len(x)):
+        X1 = (x[i] - ax) * tx + (y[i] - ay) * ty
+        Y = (y[i] - ay) * tx - (x[i] - ax) * ty
+        turn = on_branch(d2[i] - own, least) - on_branch(d1[i] - own, least)
+        plain[i] = X1 * g1[i] - (X1 - L) * g2[i] - L + Y * turn
+    for i in range(len(x)):
+        X1 = (x[i] - ax) * tx + (y[i] - ay) * ty
+        Y = (y[i] - ay) * tx - (x[i] - ax) * ty
+        X2 = X1 - L
+        r1 = X1 * X1 + Y * Y
+        r2 = X2 * X2 + Y * Y
+        moment = 0.5 * (r2 * g2[i] - r1 * g1[i]) - 0.25 * (r2 - r1)
+        second[i] = (moment + X1 * plain[i]) / L
 
 
 @njit
-def branch_outward(Y: float, X: float) -> float:
-    """Return the angle of (X, Y) in (-pi/2, 3 pi/2): cut along the outward normal."""
-    return 0.5 * math.pi - math.atan2(X, Y)
-
-
-@njit
-def branch_downstream(Y: float, X: float) -> float:
-    """Return the angle of (X, Y) in (0, 2 pi): cut along the panel's own direction."""
-    return math.pi + math.atan2(-Y, -X)
-
-
-@njit
-def contour_matrices(
-    x: FloatArray, y: FloatArray, xw: FloatArray, yw: FloatArray
+def contour_columns(
+    x: FloatArray,
+    y: FloatArray,
+    tx: FloatArray,
+    ty: FloatArray,
+    length: FloatArray,
+    logs: FloatArray,
+    angles: FloatArray,
 ) -> tuple[FloatArray, FloatArray]:
-    """Return the matrices of the streamfunction equations at the nodes.
+    """Return the streamfunction at the nodes by the speeds there and by sources on the panels.
 
     Parameters
     ----------
     x, y : (n,) array
         Nodes of the contour [chords].
-    xw, yw : (w,) array
-        Nodes of the wake, the first at the middle of the edge [chords].
+    tx, ty, length : (n - 1,) array
+        Unit tangents and lengths of its panels.
+    logs, angles : (n, n) array
+        Of `mutual_sights`.
 
     Returns
     -------
-    lhs : (n + 1, n + 1) array
-        Of the unknowns: speeds at the n nodes and psi0.
-    sources : (n, n - 1 + w - 1) array
-        Streamfunction at the nodes of unit sources on contour and wake panels.
+    columns : (n + 1, n + 1) array
+        A row for each unknown, speeds at the n nodes and psi0; a column for each equation.
+    sources : (n - 1, n) array
+        A row for the unit source on each panel.
     """
     n = len(x)
-    w = len(xw)
-    two_pi = 2.0 * math.pi
-    tx = np.empty(n - 1)
-    ty = np.empty(n - 1)
-    length = np.empty(n - 1)
-    panel_frames(x, y, tx, ty, length)
-    wx = np.empty(w - 1)
-    wy = np.empty(w - 1)
-    wl = np.empty(w - 1)
-    panel_frames(xw, yw, wx, wy, wl)
-    lhs = np.zeros((n + 1, n + 1))
-    sources = np.empty((n, n + w - 2))
-    logs = np.empty(n)
-    for i in range(n):
-        for j in range(n):
-            dx = x[i] - x[j]
-            dy = y[i] - y[j]
-            r = dx * dx + dy * dy
-            logs[j] = 0.5 * math.log(r) if r > 0.0 else 0.0
-        for j in range(n - 1):
-            X1 = (x[i] - x[j]) * tx[j] + (y[i] - y[j]) * ty[j]
-            Y = (y[i] - y[j]) * tx[j] - (x[i] - x[j]) * ty[j]
-            X2 = X1 - length[j]
-            if i == j or i == j + 1:
-                Y = 0.0
-            first, second, source = panel_integrals(
-                X1,
-                X2,
-                Y,
-                length[j],
-                logs[j],
-                logs[j + 1],
-                branch_outward(Y, X1),
-                branch_outward(Y, X2),
-            )
-            lhs[i, j] -= first / two_pi
-            lhs[i, j + 1] -= second / two_pi
-            sources[i, j] = source / two_pi
-        for k in range(w - 1):
-            X1 = (x[i] - xw[k]) * wx[k] + (y[i] - yw[k]) * wy[k]
-            Y = (y[i] - yw[k]) * wx[k] - (x[i] - xw[k]) * wy[k]
-            X2 = X1 - wl[k]
-            r1 = X1 * X1 + Y * Y
-            r2 = X2 * X2 + Y * Y
-            g1 = 0.5 * math.log(r1) if r1 > 0.0 else 0.0
-            first, second, source = panel_integrals(
-                X1,
-                X2,
-                Y,
-                wl[k],
-                g1,
-                0.5 * math.log(r2),
-                branch_downstream(Y, X1),
-                branch_downstream(Y, X2),
-            )
-            sources[i, n - 1 + k] = source / two_pi
-        lhs[i, n] = -1.0
-    close_edge(x, y, tx, ty, lhs)
-    return lhs, sources
+    columns = np.zeros((n + 1, n + 1))
+    sources = np.empty((n - 1, n))
+    plain = np.empty(n)
+    second = np.empty(n)
+    scale = 0.5 / math.pi
+    for j in range(n - 1):
+        panel = Panel(x[j], y[j], tx[j], ty[j], length[j])
+        g = logs[j : j + 2]
+        sight = angles[j : j + 2]
+        vortex_rows(panel, x, y, g, sight, OUTWARD, plain, second)
+        source_row(panel, x, y, g, sight, OUTWARD, sources[j])
+        for i in range(n):
+            columns[j, i] -= scale * (plain[i] - second[i])
+        for i in range(n):
+            columns[j + 1, i] = -scale * second[i]
+            sources[j, i] *= scale
+    columns[n, :n] = -1.0
+    close_edge(x, y, tx, ty, logs, angles, columns)
+    return columns, sources
 
 
 @njit
 def close_edge(
-    x: FloatArray, y: FloatArray, tx: FloatArray, ty: FloatArray, lhs: FloatArray
+    x: FloatArray,
+    y: FloatArray,
+    tx: FloatArray,
+    ty: FloatArray,
+    logs: FloatArray,
+    angles: FloatArray,
+    columns: FloatArray,
 ) -> None:
     """Add the base panel and the Kutta condition to the equations.
 
@@ -180,12 +241,30 @@ def close_edge(
     the bisector. The edge must be open, by however little (outer.py sees to it).
     """
     n = len(x)
-    two_pi = 2.0 * math.pi
+    base, vortex, source = base_panel(x, y, tx, ty)
+    plain = np.empty(n)
+    second = np.empty(n)
+    flux = np.empty(n)
+    ends = np.array([n - 1, 0])
+    vortex_rows(base, x, y, logs[ends], angles[ends], OUTWARD, plain, second)
+    source_row(base, x, y, logs[ends], angles[ends], OUTWARD, flux)
+    for i in range(n):
+        strength = (source * flux[i] - vortex * plain[i]) / (2.0 * math.pi)
+        columns[n - 1, i] += 0.5 * strength
+        columns[0, i] -= 0.5 * strength
+    columns[0, n] = 1.0
+    columns[n - 1, n] = 1.0
+
+
+@njit
+def base_panel(
+    x: FloatArray, y: FloatArray, tx: FloatArray, ty: FloatArray
+) -> tuple[Panel, float, float]:
+    """Return the base panel of the edge, and the vortex and the source on it by the edge speed."""
+    n = len(x)
     dx = x[0] - x[n - 1]
     dy = y[0] - y[n - 1]
     gap = math.sqrt(dx * dx + dy * dy)
-    lhs[n, 0] = 1.0
-    lhs[n, n - 1] = 1.0
     bx = -tx[0] + tx[n - 2]
     by = -ty[0] + ty[n - 2]
     norm = math.sqrt(bx * bx + by * by)
@@ -193,35 +272,48 @@ def close_edge(
     ey = dy / gap
     vortex = (bx * ex + by * ey) / norm
     source = abs(bx * ey - by * ex) / norm
-    for i in range(n):
-        X1 = (x[i] - x[n - 1]) * ex + (y[i] - y[n - 1]) * ey
-        Y = (y[i] - y[n - 1]) * ex - (x[i] - x[n - 1]) * ey
-        if i == 0 or i == n - 1:
-            Y = 0.0
-        X2 = X1 - gap
-        r1 = X1 * X1 + Y * Y
-        r2 = X2 * X2 + Y * Y
-        first, second, flux = panel_integrals(
-            X1,
-            X2,
-            Y,
-            gap,
-            0.5 * math.log(r1) if r1 > 0.0 else 0.0,
-            0.5 * math.log(r2) if r2 > 0.0 else 0.0,
-            branch_outward(Y, X1),
-            branch_outward(Y, X2),
-        )
-        strength = (-vortex * (first + second) + source * flux) / two_pi
-        lhs[i, n - 1] += 0.5 * strength
-        lhs[i, 0] -= 0.5 * strength
+    return Panel(x[n - 1], y[n - 1], ex, ey, gap), vortex, source
 
 
 @njit
-def stream_at_rest(x: FloatArray, y: FloatArray) -> FloatArray:
-    """Return the right sides of unit free streams at 0 and 90 degrees, shape (n + 1, 2)."""
+def wake_sources(
+    x: FloatArray,
+    y: FloatArray,
+    xw: FloatArray,
+    yw: FloatArray,
+    wx: FloatArray,
+    wy: FloatArray,
+    wl: FloatArray,
+    logs: FloatArray,
+    angles: FloatArray,
+) -> FloatArray:
+    """Return the streamfunction at the contour's nodes of unit sources on the wake's panels.
+
+    Parameters
+    ----------
+    xw, yw, wx, wy, wl : array
+        Nodes, tangents and lengths of the wake, the first node at the middle of the edge.
+    logs, angles : (w, n) array
+        Of `sights` from the wake's nodes.
+
+    Returns
+    -------
+    sources : (w - 1, n) array
+    """
+    out = np.empty((len(wl), len(x)))
+    for k in range(len(wl)):
+        panel = Panel(xw[k], yw[k], wx[k], wy[k], wl[k])
+        source_row(panel, x, y, logs[k : k + 2], angles[k : k + 2], DOWNSTREAM, out[k])
+    out *= 0.5 / math.pi
+    return out
+
+
+@njit
+def streams_at_rest(x: FloatArray, y: FloatArray) -> FloatArray:
+    """Return the right sides of unit free streams at 0 and 90 degrees, (2, n + 1)."""
     n = len(x)
-    right = np.zeros((n + 1, 2))
+    right = np.zeros((2, n + 1))
     for i in range(n):
-        right[i, 0] = -y[i]
-        right[i, 1] = x[i]
+        right[0, i] = -y[i]
+        right[1, i] = x[i]
     return right

@@ -20,7 +20,18 @@ import math
 import numpy as np
 
 from optim.aerodynamics.kernels import njit
-from optim.aerodynamics.panel import contour_matrices, panel_frames, stream_at_rest
+from optim.aerodynamics.lapack import AS_STORED, factorise, substitute
+from optim.aerodynamics.panel import (
+    Panel,
+    base_panel,
+    contour_columns,
+    mutual_sights,
+    on_branch,
+    panel_frames,
+    sights,
+    streams_at_rest,
+    wake_sources,
+)
 from optim.arrays import FloatArray
 
 WAKE_LENGTH = 1.0
@@ -48,27 +59,27 @@ def growth_ratio(first: float, total: float, steps: int) -> float:
 
 
 @njit
-def vortex_and_source(
-    px: float, py: float, ax: float, ay: float, tx: float, ty: float, L: float
+def panel_velocities(
+    panel: Panel, px: float, py: float, spread: float, angle: float
 ) -> tuple[float, float, float, float, float, float]:
     """Return the velocities at a point off a panel, per unit of what lies on it.
 
     Parameters
     ----------
+    panel : Panel
+        Where it lies.
     px, py : float
         The point.
-    ax, ay, tx, ty, L : float
-        First end, unit tangent and length of the panel.
+    spread, angle : float
+        ln(r1/r2) of the distances from its two ends, and the angle under which it is seen.
 
     Returns
     -------
     (u, v) of the speed at the first end, of the speed at the second end, of a unit source.
     """
+    ax, ay, tx, ty, L = panel
     X1 = (px - ax) * tx + (py - ay) * ty
     Y = (py - ay) * tx - (px - ax) * ty
-    X2 = X1 - L
-    spread = 0.5 * math.log((X1 * X1 + Y * Y) / (X2 * X2 + Y * Y))
-    angle = math.atan2(Y * L, X1 * X2 + Y * Y)
     second_Y = (X1 * angle - Y * spread) / L
     second_X = (X1 * spread - L + Y * angle) / L
     first_Y = angle - second_Y
@@ -82,6 +93,20 @@ def vortex_and_source(
         scale * (spread * tx - angle * ty),
         scale * (angle * tx + spread * ty),
     )
+
+
+@njit
+def vortex_and_source(
+    panel: Panel, px: float, py: float
+) -> tuple[float, float, float, float, float, float]:
+    """Return `panel_velocities` where logarithm and angle are not known yet."""
+    ax, ay, tx, ty, L = panel
+    X1 = (px - ax) * tx + (py - ay) * ty
+    Y = (py - ay) * tx - (px - ax) * ty
+    X2 = X1 - L
+    spread = 0.5 * math.log((X1 * X1 + Y * Y) / (X2 * X2 + Y * Y))
+    angle = math.atan2(Y * L, X1 * X2 + Y * Y)
+    return panel_velocities(panel, px, py, spread, angle)
 
 
 @njit
@@ -100,7 +125,8 @@ def velocity(
     u = math.cos(alpha)
     v = math.sin(alpha)
     for j in range(len(x) - 1):
-        u1, v1, u2, v2, _, _ = vortex_and_source(px, py, x[j], y[j], tx[j], ty[j], length[j])
+        panel = Panel(x[j], y[j], tx[j], ty[j], length[j])
+        u1, v1, u2, v2, _, _ = vortex_and_source(panel, px, py)
         u += u1 * q[j] + u2 * q[j + 1]
         v += v1 * q[j] + v2 * q[j + 1]
     return u, v
@@ -149,7 +175,25 @@ def wake_line(
 
 
 @njit
-def wake_rows(
+def wake_directions(wx: FloatArray, wy: FloatArray) -> FloatArray:
+    """Return the unit directions (w, 2) of the wake at its nodes; zero at the edge.
+
+    There the speed is that of the contour, and nothing that is induced counts.
+    """
+    w = len(wx) + 1
+    along = np.zeros((w, 2))
+    for k in range(1, w):
+        ahead = min(k, w - 2)
+        dx = wx[k - 1] + wx[ahead]
+        dy = wy[k - 1] + wy[ahead]
+        norm = math.sqrt(dx * dx + dy * dy)
+        along[k, 0] = dx / norm
+        along[k, 1] = dy / norm
+    return along
+
+
+@njit
+def induced_by_contour(
     x: FloatArray,
     y: FloatArray,
     tx: FloatArray,
@@ -157,112 +201,108 @@ def wake_rows(
     length: FloatArray,
     xw: FloatArray,
     yw: FloatArray,
-    wx: FloatArray,
-    wy: FloatArray,
-    wl: FloatArray,
-) -> tuple[FloatArray, FloatArray, FloatArray]:
-    """Return what induces the speed along the wake.
+    along: FloatArray,
+    logs: FloatArray,
+    angles: FloatArray,
+) -> tuple[FloatArray, FloatArray]:
+    """Return what the contour induces along the wake.
+
+    Parameters
+    ----------
+    along : (w, 2) array
+        Directions of the wake.
+    logs, angles : (w, n) array
+        Of `sights` from the wake's nodes: what the panels see is the same, turned about.
 
     Returns
     -------
-    stream : (w, 2) array
-        Of unit free streams at 0 and 90 degrees.
-    speeds : (w, n) array
-        Of the speeds at the contour nodes.
-    sources : (w, n - 1 + w - 1) array
-        Of sources on contour and wake panels. The two panels that meet at a node have opposite
-        logarithmic ends; their finite part is the one exact for a source linear through the node.
-    The first row, at the edge, stays zero: there the speed is that of the contour.
+    speeds : (w, n + 1) array
+        By the speeds at the contour nodes; the last column, psi0, stays zero.
+    sources : (n - 1, w) array
+        By unit sources on the panels.
     """
     n = len(x)
     w = len(xw)
-    stream = np.zeros((w, 2))
-    speeds = np.zeros((w, n))
-    sources = np.zeros((w, n + w - 2))
+    speeds = np.zeros((w, n + 1))
+    sources = np.zeros((n - 1, w))
     for k in range(1, w):
-        ahead = min(k, w - 2)
-        dx = wx[k - 1] + wx[ahead]
-        dy = wy[k - 1] + wy[ahead]
-        norm = math.sqrt(dx * dx + dy * dy)
-        dx /= norm
-        dy /= norm
-        stream[k, 0] = dx
-        stream[k, 1] = dy
+        dx = along[k, 0]
+        dy = along[k, 1]
         for j in range(n - 1):
-            u1, v1, u2, v2, us, vs = vortex_and_source(
-                xw[k], yw[k], x[j], y[j], tx[j], ty[j], length[j]
+            panel = Panel(x[j], y[j], tx[j], ty[j], length[j])
+            angle = on_branch(angles[k, j + 1] - angles[k, j], -math.pi)
+            u1, v1, u2, v2, us, vs = panel_velocities(
+                panel, xw[k], yw[k], logs[k, j] - logs[k, j + 1], angle
             )
             speeds[k, j] += u1 * dx + v1 * dy
             speeds[k, j + 1] += u2 * dx + v2 * dy
-            sources[k, j] = us * dx + vs * dy
+            sources[j, k] = us * dx + vs * dy
+    base, vortex, source = base_panel(x, y, tx, ty)
+    for k in range(1, w):
+        u1, v1, u2, v2, us, vs = vortex_and_source(base, xw[k], yw[k])
+        u = vortex * (u1 + u2) + source * us
+        v = vortex * (v1 + v2) + source * vs
+        strength = u * along[k, 0] + v * along[k, 1]
+        speeds[k, n - 1] += 0.5 * strength
+        speeds[k, 0] -= 0.5 * strength
+    return speeds, sources
+
+
+@njit
+def induced_by_wake(
+    xw: FloatArray,
+    yw: FloatArray,
+    wx: FloatArray,
+    wy: FloatArray,
+    wl: FloatArray,
+    along: FloatArray,
+) -> FloatArray:
+    """Return the speed along the wake by unit sources on its panels, shape (w - 1, w).
+
+    The two panels that meet at a node have opposite logarithmic ends; their finite part is the one
+    exact for a source linear through the node.
+    """
+    w = len(xw)
+    sources = np.zeros((w - 1, w))
+    for k in range(1, w):
         for j in range(w - 1):
             if j in (k - 1, k):
                 continue
-            u1, v1, u2, v2, us, vs = vortex_and_source(
-                xw[k], yw[k], xw[j], yw[j], wx[j], wy[j], wl[j]
-            )
-            sources[k, n - 1 + j] = us * dx + vs * dy
+            panel = Panel(xw[j], yw[j], wx[j], wy[j], wl[j])
+            _, _, _, _, us, vs = vortex_and_source(panel, xw[k], yw[k])
+            sources[j, k] = us * along[k, 0] + vs * along[k, 1]
         a = wl[k - 1]
-        b = wl[ahead]
+        b = wl[min(k, w - 2)]
         inner = (a * math.log(a) + b * math.log(b)) / (a + b) - 2.0
-        sources[k, n - 1 + k - 1] = (math.log(a) - inner) / (2.0 * math.pi)
+        sources[k - 1, k] = (math.log(a) - inner) / (2.0 * math.pi)
         if k < w - 1:
-            sources[k, n - 1 + k] = -(math.log(b) - inner) / (2.0 * math.pi)
-    return stream, speeds, sources
+            sources[k, k] = -(math.log(b) - inner) / (2.0 * math.pi)
+    return sources
 
 
 @njit
-def base_rows(
-    x: FloatArray,
-    y: FloatArray,
-    tx: FloatArray,
-    ty: FloatArray,
-    xw: FloatArray,
-    yw: FloatArray,
-    stream: FloatArray,
-    speeds: FloatArray,
-) -> None:
-    """Add what the base panel of a blunt edge induces along the wake, by the edge speed."""
-    n = len(x)
-    dx = x[0] - x[n - 1]
-    dy = y[0] - y[n - 1]
-    gap = math.sqrt(dx * dx + dy * dy)
-    bx = -tx[0] + tx[n - 2]
-    by = -ty[0] + ty[n - 2]
-    norm = math.sqrt(bx * bx + by * by)
-    ex = dx / gap
-    ey = dy / gap
-    vortex = (bx * ex + by * ey) / norm
-    source = abs(bx * ey - by * ex) / norm
-    for k in range(1, len(xw)):
-        u1, v1, u2, v2, us, vs = vortex_and_source(xw[k], yw[k], x[n - 1], y[n - 1], ex, ey, gap)
-        u = vortex * (u1 + u2) + source * us
-        v = vortex * (v1 + v2) + source * vs
-        along = u * stream[k, 0] + v * stream[k, 1]
-        speeds[k, n - 1] += 0.5 * along
-        speeds[k, 0] -= 0.5 * along
+def by_mass(sources: FloatArray, length: FloatArray, out: FloatArray) -> None:
+    """Turn rows by source strength into rows by the signed mass defect at the panels' ends.
 
-
-@njit
-def by_mass(sources: FloatArray, length: FloatArray, wl: FloatArray, n: int) -> FloatArray:
-    """Turn columns by source strength into columns by signed mass defect at the nodes.
-
-    A panel's source is the difference of the signed mass over its length; contour nodes come
-    first, then those of the wake.
+    A panel's source is the difference of the signed mass over its length. `out` has one row more
+    than `sources` and may have longer ones.
     """
-    rows = sources.shape[0]
-    w = len(wl) + 1
-    out = np.zeros((rows, n + w))
-    for i in range(rows):
-        for j in range(n - 1):
-            strength = sources[i, j] / length[j]
-            out[i, j + 1] += strength
-            out[i, j] -= strength
-        for k in range(w - 1):
-            strength = sources[i, n - 1 + k] / wl[k]
-            out[i, n + k + 1] += strength
-            out[i, n + k] -= strength
-    return out
+    for j in range(len(length)):
+        for i in range(sources.shape[1]):
+            strength = sources[j, i] / length[j]
+            out[j, i] -= strength
+            out[j + 1, i] += strength
+
+
+@njit
+def angle_without_circulation(q: FloatArray, length: FloatArray) -> float:
+    """Return the angle of attack at which speeds (2, n) of unit streams have no circulation."""
+    still = 0.0
+    upright = 0.0
+    for j in range(len(length)):
+        still += (q[0, j] + q[0, j + 1]) * length[j]
+        upright += (q[1, j] + q[1, j + 1]) * length[j]
+    return -math.atan(still / upright)
 
 
 @njit
@@ -290,40 +330,54 @@ def outer_flow(
     ty = np.empty(n - 1)
     length = np.empty(n - 1)
     panel_frames(x, y, tx, ty, length)
-    right = stream_at_rest(x, y)
-    far = np.array([2.0, 3.0])
-    lhs, _ = contour_matrices(x, y, far, np.zeros(2))
-    guess = np.linalg.solve(lhs, right)
-    still = 0.0
-    upright = 0.0
-    for j in range(n - 1):
-        still += (guess[j, 0] + guess[j + 1, 0]) * length[j]
-        upright += (guess[j, 1] + guess[j + 1, 1]) * length[j]
-    # the angle without circulation: the wake of a mirrored section is the mirrored wake
-    angle = -math.atan(still / upright)
-    q = math.cos(angle) * guess[:n, 0] + math.sin(angle) * guess[:n, 1]
+    logs, angles = mutual_sights(x, y)
+    columns, sources = contour_columns(x, y, tx, ty, length, logs, angles)
+    pivots = np.empty(n + 1, np.int32)
+    if not factorise(columns, pivots):
+        raise np.linalg.LinAlgError("the panels of the contour have no solution")
+    streams = streams_at_rest(x, y)
+    substitute(columns, pivots, streams, AS_STORED)
+    # the wake of a mirrored section is the mirrored wake
+    angle = angle_without_circulation(streams, length)
+    q = math.cos(angle) * streams[0] + math.sin(angle) * streams[1]
     xw, yw = wake_line(x, y, tx, ty, length, q, angle)
     w = len(xw)
     wx = np.empty(w - 1)
     wy = np.empty(w - 1)
     wl = np.empty(w - 1)
     panel_frames(xw, yw, wx, wy, wl)
-    lhs, sources = contour_matrices(x, y, xw, yw)
-    blown = by_mass(sources, length, wl, n)
-    both = np.zeros((n + 1, 2 + n + w))
-    both[:, :2] = right
-    both[:n, 2:] = -blown
-    solved = np.linalg.solve(lhs, both)
-    total = np.empty((n + w, 2 + n + w))
-    total[:n] = solved[:n]
-    total[n] = 0.5 * (solved[n - 1] - solved[0])
-    stream, speeds, along = wake_rows(x, y, tx, ty, length, xw, yw, wx, wy, wl)
-    base_rows(x, y, tx, ty, xw, yw, stream, speeds)
-    induced = np.ascontiguousarray(speeds) @ np.ascontiguousarray(solved[:n])
-    direct = by_mass(along, length, wl, n)
-    for k in range(1, w):
-        for j in range(2):
-            total[n + k, j] = induced[k, j] + stream[k, j]
-        for j in range(n + w):
-            total[n + k, 2 + j] = induced[k, 2 + j] + direct[k, j]
-    return np.ascontiguousarray(total[:, :2]), np.ascontiguousarray(total[:, 2:]), xw, yw
+    logs, angles = sights(xw, yw, x, y)
+    along = wake_directions(wx, wy)
+    solved = np.zeros((n + w, n + 1))
+    by_mass(-sources, length, solved[:n])
+    by_mass(-wake_sources(x, y, xw, yw, wx, wy, wl, logs, angles), wl, solved[n:])
+    substitute(columns, pivots, solved, AS_STORED)
+    speeds, blown = induced_by_contour(x, y, tx, ty, length, xw, yw, along, logs, angles)
+    direct = np.zeros((n + w, w))
+    by_mass(blown, length, direct[:n])
+    by_mass(induced_by_wake(xw, yw, wx, wy, wl, along), wl, direct[n:])
+    stream = with_wake(streams, np.ascontiguousarray(along.T), speeds)
+    return stream, with_wake(solved, direct, speeds), xw, yw
+
+
+@njit
+def with_wake(contour: FloatArray, direct: FloatArray, speeds: FloatArray) -> FloatArray:
+    """Return the speeds at contour and wake nodes (n + w, m) by each of m causes.
+
+    Parameters
+    ----------
+    contour : (m, n + 1) array
+        Speeds at the contour by each cause, and psi0.
+    direct : (m, w) array
+        What each cause induces along the wake itself.
+    speeds : (w, n + 1) array
+        What the speeds at the contour induce there. At the edge, the first node, the speed is the
+        mean of the contour's two.
+    """
+    m, n = contour.shape[0], contour.shape[1] - 1
+    w = len(speeds)
+    out = np.empty((n + w, m))
+    out[:n] = contour.T[:n]
+    out[n:] = np.dot(speeds, contour.T) + direct.T
+    out[n] = 0.5 * (contour[:, n - 1] - contour[:, 0])
+    return out
