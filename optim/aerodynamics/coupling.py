@@ -16,10 +16,10 @@ import math
 
 import numpy as np
 
-from optim.aerodynamics.assembly import add_row, assemble_side, assemble_wake
+from optim.aerodynamics.assembly import side_equations, wake_equations
 from optim.aerodynamics.compressibility import compressed_speed
 from optim.aerodynamics.forces import lift_force
-from optim.aerodynamics.interval import HELD
+from optim.aerodynamics.interval import EQUATIONS, HELD
 from optim.aerodynamics.kernels import njit
 from optim.aerodynamics.lapack import TRANSPOSED, factorise, substitute
 from optim.aerodynamics.layer import SLOPES, TERMS
@@ -27,6 +27,7 @@ from optim.aerodynamics.layout import (
     ANGLE,
     LOWER,
     NEVER,
+    PARTS,
     PLACE,
     RIGHT,
     UPPER,
@@ -42,6 +43,7 @@ from optim.aerodynamics.layout import (
     stagnation_node,
 )
 from optim.aerodynamics.placement import place_transitions
+from optim.aerodynamics.rows import fill_side, fill_wake, station_changes, wake_head
 from optim.aerodynamics.step import CAUTION, LARGEST_STEP, limit_step, take_step
 from optim.arrays import FloatArray, IntArray
 
@@ -132,8 +134,7 @@ def lift_row(
     n = len(x)
     by_q = np.empty(n)
     cl, by_alpha, _, _ = lift_force(x, y, q[:n], alpha, mach, by_q)
-    for i in range(n):
-        add_row(row, by_q[i], rows.V[i])
+    row += np.dot(by_q, rows.V[:n])
     row[ANGLE] += by_alpha
     row[RIGHT] += cl - wanted
     return abs(float(cl - wanted))
@@ -181,11 +182,19 @@ def solve_rows(A: FloatArray, z: FloatArray) -> bool:
 def empty_rows(V: FloatArray) -> Rows:
     """Return the rows about those of the outer flow, zero."""
     nt, width = V.shape
-    return Rows(np.zeros((nt, width)), np.zeros((nt, width)), V, np.zeros((nt + 2, width)))
+    return Rows(
+        V,
+        np.zeros((nt + 2, width)),
+        np.zeros((2, width)),
+        np.zeros((2, width)),
+        np.zeros(width),
+        np.zeros((2, width)),
+        np.zeros((nt, EQUATIONS, PARTS)),
+    )
 
 
 @njit
-def assemble(
+def set_equations(
     layers: Layers,
     rows: Rows,
     terms: FloatArray,
@@ -203,17 +212,48 @@ def assemble(
     Re: float,
     mach: float,
 ) -> float:
-    """Fill all rows, but those of the influence (arguments: see `newton`); return the residual."""
+    """Fill all but the rows of the stations (arguments: see `newton`); return the residual."""
     n = len(x)
     M2 = mach * mach
     q = layers.q
+    parts = rows.parts
     mismatch = outer_rows(rows.V, stream, influence, alpha, layers.M, q)
-    upper = assemble_side(layers, rows, terms, js, n, UPPER, turning, Re, M2)
-    lower = assemble_side(layers, rows, terms, js, n, LOWER, turning, Re, M2)
-    wake = assemble_wake(layers, rows, terms, n, gap, turning.turn, Re, M2)
+    upper = side_equations(layers, parts, terms, js, n, UPPER, turning, Re, M2)
+    lower = side_equations(layers, parts, terms, js, n, LOWER, turning, Re, M2)
+    wake = wake_equations(layers, parts, terms, n, gap, turning.turn, Re, M2)
     lift = lift_row(rows, x, y, q, alpha, mach, wanted)
     stagnation_row(rows, q, s, js, s0)
     return max(upper, lower, wake, mismatch, lift)
+
+
+@njit
+def solve_step(
+    layers: Layers,
+    rows: Rows,
+    terms: FloatArray,
+    turning: Turning,
+    n: int,
+    gap: float,
+    js: int,
+    Re: float,
+    M2: float,
+    z: FloatArray,
+    changes: FloatArray,
+) -> bool:
+    """Fill the changes of the global unknowns and of t, s and q at all stations (nt, 3).
+
+    False if there is no step. It comes after `set_equations`, apart from it because the rows of the
+    stations are most of the work, and a solution found needs none.
+    """
+    turn = turning.turn
+    upper = fill_side(layers, rows, terms, js, n, UPPER, turning)
+    lower = fill_side(layers, rows, terms, js, n, LOWER, turning)
+    wake_head(layers, rows, upper, lower, n, gap, turn, Re, M2)
+    fill_wake(rows, n)
+    if not (all_finite(rows.A) and solve_rows(rows.A, z)):
+        return False
+    station_changes(rows, z, js, n, turn, changes)
+    return True
 
 
 @njit
@@ -296,6 +336,7 @@ def newton(
     waited = 0
     since = 0
     z = np.ones(nt + 3)
+    changes = np.empty((nt, 3))
     residual = 1e9
     change = 1e9
     for iteration in range(budget):
@@ -314,7 +355,7 @@ def newton(
         )
         since = since + 1 if np.all(turn == last_turn) else 0
         last_turn[:] = turn
-        residual = assemble(
+        residual = set_equations(
             layers, rows, terms, turning, x, y, s, stream, influence, gap, js, s0, alpha, wanted,
             Re, mach,
         )  # fmt: skip
@@ -322,13 +363,16 @@ def newton(
         held = why[UPPER] == HELD or why[LOWER] == HELD
         if residual < tolerance and change < math.sqrt(tolerance) and not held:
             return True, js, alpha, iteration, residual
-        if not (residual < GREATEST_RESIDUAL and all_finite(rows.A) and solve_rows(rows.A, z)):
+        if not (
+            residual < GREATEST_RESIDUAL
+            and solve_step(layers, rows, terms, turning, n, gap, js, Re, M2, z, changes)
+        ):
             return False, js, alpha, iteration, residual
         bound = LARGEST_STEP / (1.0 + since / CAUTION)
-        factor, change = limit_step(layers, rows, z, js, n, turn, bound)
+        factor, change = limit_step(layers, changes, z, js, bound)
         if not change < GREATEST_CHANGE:
             return False, js, alpha, iteration, residual
         history[iteration, 1] = change
-        take_step(layers, rows, z, factor, js, n, turn)
+        take_step(layers, changes, z, factor, js, n, turn)
         alpha += factor * z[ANGLE]
     return False, js, alpha, budget, residual

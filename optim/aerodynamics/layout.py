@@ -75,19 +75,42 @@ class Turning(NamedTuple):
 
 
 class Rows(NamedTuple):
-    """The linear equations: changes of t, s and q of all stations, and the rows left to solve.
+    """The linear equations of a step: rows of changes, columns of the global unknowns.
 
     Columns are the changes of the mass defect at the nt stations, ANGLE, PLACE and RIGHT.
+
+    V : (nt, nt + 3) array
+        Speeds of all stations.
+    A : (nt + 2, nt + 3) array
+        The equations left to solve.
+    lead, place : (2, nt + 3) array
+        Of each side: t at the first station, and the fraction at which it turns.
+    slope : (nt + 3,) array
+        Logarithm of the speed's slope at the stagnation point.
+    head : (2, nt + 3) array
+        t and s at the wake's head.
+    parts : (nt, 3, 9) array
+        The equations of the interval ahead of each station, t, energy and s, as sums of rows.
     """
 
-    T: FloatArray
-    S: FloatArray
     V: FloatArray
     A: FloatArray
+    lead: FloatArray
+    place: FloatArray
+    slope: FloatArray
+    head: FloatArray
+    parts: FloatArray
 
 
 ANGLE, PLACE, RIGHT = -3, -2, -1
 """Columns of the angle of attack, of the stagnation point and of the right side."""
+
+UP_T, UP_S, UP_V, DOWN_V, BY_TURN, AT_UP, AT_DOWN, AT_PLACE, AT_RIGHT = range(9)
+"""What an equation of an interval is made of: rows of t, s and q upstream, of q downstream and of
+the fraction at which it turns, and single entries."""
+
+PARTS = 9
+"""Number of these."""
 
 
 @njit

@@ -8,11 +8,9 @@ from __future__ import annotations
 
 import math
 
-import numpy as np
-
 from optim.aerodynamics.kernels import njit
 from optim.aerodynamics.layer import LAMINAR, TURBULENT, WAKE
-from optim.aerodynamics.layout import ANGLE, RIGHT, Layers, Rows
+from optim.aerodynamics.layout import ANGLE, Layers
 from optim.arrays import FloatArray, IntArray
 
 LEAST_SHAPE = (1.8, 1.02, 1.0)
@@ -64,31 +62,20 @@ def keep_shape(
 @njit
 def limit_step(
     layers: Layers,
-    rows: Rows,
+    changes: FloatArray,
     z: FloatArray,
     js: int,
-    n: int,
-    turn: IntArray,
     bound: float,
 ) -> tuple[float, float]:
     """Return the largest fraction of a step that is safe, and the largest change it makes.
 
-    `bound` is the largest change of a logarithm. The right sides of `rows` are filled with the
-    changes of t, s and q that `z`, those of the global unknowns, brings about.
+    `changes` are those of t, s and q at all stations (nt, 3), z those of the global unknowns;
+    `bound` is the largest change of a logarithm.
     """
     factor = 1.0
     largest = 0.0
-    change_t = np.dot(rows.T, z)
-    change_s = np.dot(rows.S, z)
-    change_q = np.dot(rows.V, z)
     for i in range(len(layers.M)):
-        dt = change_t[i]
-        dq = change_q[i]
-        # the rows of S are only kept up where a layer has a shear stress
-        ds = 0.0 if i < n and is_laminar(i, js, turn) else change_s[i]
-        rows.T[i, RIGHT] = dt
-        rows.S[i, RIGHT] = ds
-        rows.V[i, RIGHT] = dq
+        dt, ds, dq = changes[i]
         if js - 1 <= i <= js + 2:
             largest = max(largest, abs(dt))
             factor = min(factor, bound / max(abs(dt), 1e-30))
@@ -107,7 +94,7 @@ def limit_step(
 @njit
 def take_step(
     layers: Layers,
-    rows: Rows,
+    changes: FloatArray,
     z: FloatArray,
     factor: float,
     js: int,
@@ -119,9 +106,9 @@ def take_step(
     for i in range(len(M)):
         kind = WAKE if i >= n else (LAMINAR if is_laminar(i, js, turn) else TURBULENT)
         M[i] += factor * z[i]
-        q[i] += factor * rows.V[i, RIGHT]
+        q[i] += factor * changes[i, 2]
         shape = math.exp(X[i, 1] - X[i, 0])
-        X[i, 0] += factor * rows.T[i, RIGHT]
-        X[i, 3] += factor * rows.S[i, RIGHT]
+        X[i, 0] += factor * changes[i, 0]
+        X[i, 3] += factor * changes[i, 1]
         if not js - 1 <= i <= js + 2:
             keep_shape(X, M, q, i, shape, LEAST_SHAPE[kind])
