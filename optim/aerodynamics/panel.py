@@ -106,26 +106,65 @@ def on_branch(angle: float, least: float) -> float:
 
 
 @njit
+def turn_row(
+    panel: Panel,
+    x: FloatArray,
+    y: FloatArray,
+    least: float,
+    out: FloatArray,
+) -> None:
+    """Fill the angle under which a panel is seen from all points, on a branch of its two ends.
+
+    Where the cuts run outward, one side on, a point between them sees both from the far side. The
+    difference of two directions would be the same angle less exactly: it is small where the panel
+    is, and what it errs by is divided by the panel's length.
+    """
+    ax, ay, tx, ty, L = panel
+    for i in range(len(x)):
+        X1 = (x[i] - ax) * tx + (y[i] - ay) * ty
+        Y = (y[i] - ay) * tx - (x[i] - ax) * ty
+        X2 = X1 - L
+        out[i] = math.atan2(Y * L, X1 * X2 + Y * Y)
+        if least == OUTWARD and Y < 0.0 and X2 < 0.0 < X1:
+            out[i] += 2.0 * math.pi
+
+
+@njit
 def source_row(
     panel: Panel,
     x: FloatArray,
     y: FloatArray,
     g: FloatArray,
-    angles: FloatArray,
+    ahead: FloatArray,
+    turn: FloatArray,
     least: float,
     out: FloatArray,
 ) -> None:
-    """Fill int theta ds of a panel at all points (arguments: see `vortex_rows`)."""
+    """Fill int theta ds of a panel at all points.
+
+    Parameters
+    ----------
+    panel : Panel
+        Where it lies.
+    x, y : (n,) array
+        The points.
+    g : (2, n) array
+        ln r of the points from the two ends (any finite value where r = 0).
+    ahead, turn : (n,) array
+        Direction of the points from the second end, which is not to be one of them; of `turn_row`.
+    least : float
+        Least angle on the branch of the angles from the panel's own direction.
+    out : (n,) array
+        Filled.
+    """
     ax, ay, tx, ty, L = panel
     g1, g2 = g
-    d1, d2 = angles
     own = math.atan2(ty, tx)
     for i in range(len(x)):
         X1 = (x[i] - ax) * tx + (y[i] - ay) * ty
         Y = (y[i] - ay) * tx - (x[i] - ax) * ty
-        a1 = on_branch(d1[i] - own, least)
-        a2 = on_branch(d2[i] - own, least)
-        out[i] = X1 * a1 - (X1 - L) * a2 + Y * (g1[i] - g2[i])
+        a2 = on_branch(ahead[i] - own, least)
+        out[i] = L * a2 - X1 * turn[i] + Y * (g1[i] - g2[i])
 
 
 @njit
@@ -134,36 +173,18 @@ def vortex_rows(
     x: FloatArray,
     y: FloatArray,
     g: FloatArray,
-    angles: FloatArray,
-    least: float,
+    turn: FloatArray,
     plain: FloatArray,
     second: FloatArray,
 ) -> None:
-    """Fill int ln r ds and int (s/L) ln r ds of a panel at all points.
-
-    Parameters
-    ----------
-    panel : Panel
-        Where it lies.
-    x, y : (n,) array
-        The points.
-    g, angles : (2, n) array
-        ln r and direction of the points from the two ends (any finite value where r = 0).
-    least : float
-        Least angle on the branch of the angles from the panel's own direction.
-    plain, second : (n,) array
-        Filled.
-    """
+    """Fill int ln r ds and int (s/L) ln r ds of a panel at all points (see `source_row`)."""
     ax, ay, tx, ty, L = panel
     g1, g2 = g
-    d1, d2 = angles
-    own = math.atan2(ty, tx)
     # two loops with few arrays each: with more of them the compiler does not vectorise
     for i in range(len(x)):
         X1 = (x[i] - ax) * tx + (y[i] - ay) * ty
         Y = (y[i] - ay) * tx - (x[i] - ax) * ty
-        turn = on_branch(d2[i] - own, least) - on_branch(d1[i] - own, least)
-        plain[i] = X1 * g1[i] - (X1 - L) * g2[i] - L + Y * turn
+        plain[i] = X1 * g1[i] - (X1 - L) * g2[i] - L + Y * turn[i]
     for i in range(len(x)):
         X1 = (x[i] - ax) * tx + (y[i] - ay) * ty
         Y = (y[i] - ay) * tx - (x[i] - ax) * ty
@@ -207,13 +228,16 @@ def contour_columns(
     sources = np.empty((n - 1, n))
     plain = np.empty(n)
     second = np.empty(n)
+    turn = np.empty(n)
     scale = 0.5 / math.pi
     for j in range(n - 1):
         panel = Panel(x[j], y[j], tx[j], ty[j], length[j])
         g = logs[j : j + 2]
-        sight = angles[j : j + 2]
-        vortex_rows(panel, x, y, g, sight, OUTWARD, plain, second)
-        source_row(panel, x, y, g, sight, OUTWARD, sources[j])
+        turn_row(panel, x, y, OUTWARD, turn)
+        vortex_rows(panel, x, y, g, turn, plain, second)
+        source_row(panel, x, y, g, angles[j + 1], turn, OUTWARD, sources[j])
+        # the second end has no direction from itself; from the first one it lies straight ahead
+        sources[j, j + 1] = 0.0
         for i in range(n):
             columns[j, i] -= scale * (plain[i] - second[i])
         for i in range(n):
@@ -245,9 +269,12 @@ def close_edge(
     plain = np.empty(n)
     second = np.empty(n)
     flux = np.empty(n)
-    ends = np.array([n - 1, 0])
-    vortex_rows(base, x, y, logs[ends], angles[ends], OUTWARD, plain, second)
-    source_row(base, x, y, logs[ends], angles[ends], OUTWARD, flux)
+    turn = np.empty(n)
+    g = logs[np.array([n - 1, 0])]
+    turn_row(base, x, y, OUTWARD, turn)
+    vortex_rows(base, x, y, g, turn, plain, second)
+    source_row(base, x, y, g, angles[0], turn, OUTWARD, flux)
+    flux[0] = 0.0
     for i in range(n):
         strength = (source * flux[i] - vortex * plain[i]) / (2.0 * math.pi)
         columns[n - 1, i] += 0.5 * strength
@@ -301,9 +328,11 @@ def wake_sources(
     sources : (w - 1, n) array
     """
     out = np.empty((len(wl), len(x)))
+    turn = np.empty(len(x))
     for k in range(len(wl)):
         panel = Panel(xw[k], yw[k], wx[k], wy[k], wl[k])
-        source_row(panel, x, y, logs[k : k + 2], angles[k : k + 2], DOWNSTREAM, out[k])
+        turn_row(panel, x, y, DOWNSTREAM, turn)
+        source_row(panel, x, y, logs[k : k + 2], angles[k + 1], turn, DOWNSTREAM, out[k])
     out *= 0.5 / math.pi
     return out
 
