@@ -45,7 +45,11 @@ def test_a_writer_in_another_process_is_named(run):
     assert claim_path(run).exists()
 
 
-@pytest.mark.parametrize("left", ["", "{", json.dumps({"pid": os.getpid(), "host": "x"})])
+@pytest.mark.parametrize(
+    "left",
+    ["", "{", json.dumps({"pid": os.getpid(), "host": "x"})],
+    ids=["empty", "cut", "of another"],
+)
 def test_a_claim_left_behind_is_no_obstacle(run, left):
     """Even one that names a process that is alive: the lock counts, not the note."""
     write_journal(run, 1)
