@@ -16,6 +16,7 @@ from optim.aerodynamics.compressibility import (
 from optim.aerodynamics.evaluator import SectionEvaluator
 from optim.aerodynamics.outer import Outer
 from optim.geometry.naca import naca_section
+from optim.geometry.section import section_from_coordinates
 from optim.geometry.spacing import panel_nodes
 from optim.outcomes import Outcome
 
@@ -113,6 +114,17 @@ def test_peak_and_stagnation_at_320_panels(name, degrees, exact_sections, solved
     assert flow.stagnation_x == pytest.approx(exact[0], abs=1.5e-4)
     found = stagnation(evaluator.outer, speeds(evaluator.outer, alpha))
     assert np.linalg.norm(found - exact) < 1.5e-4
+
+
+@pytest.mark.parametrize(("name", "degrees"), CASES)
+def test_exact_sections_on_the_panels_of_the_tool(name, degrees, exact_sections):
+    """The same sections as a user has them, points of a file, at the tool's own spacing."""
+    exact, alpha = exact_sections[name][0], math.radians(degrees)
+    section, _ = section_from_coordinates(exact.nodes(1600), name)
+    flow = SectionEvaluator(panel_nodes(section, 160)).inviscid(alpha=alpha + section.rotation)
+    assert flow.cl == pytest.approx(exact.lift(alpha), rel=3e-4, abs=1e-6)
+    assert flow.cm_quarter == pytest.approx(exact.moment(alpha), abs=5e-4)
+    assert flow.cp_min == pytest.approx(exact.suction_peak(alpha), rel=0.005)
 
 
 @pytest.mark.parametrize(("name", "degrees"), CASES)
