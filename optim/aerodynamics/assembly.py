@@ -22,6 +22,7 @@ from optim.aerodynamics.interval import (
 from optim.aerodynamics.kernels import njit
 from optim.aerodynamics.layer import LAMINAR, TURBULENT, WAKE, station_terms
 from optim.aerodynamics.layout import (
+    AT_BEFORE,
     AT_DOWN,
     AT_PLACE,
     AT_RIGHT,
@@ -29,10 +30,12 @@ from optim.aerodynamics.layout import (
     BY_TURN,
     DOWN_V,
     PARTS,
+    T_BEFORE,
     UP_S,
     UP_T,
     UP_V,
     UPPER,
+    V_BEFORE,
     Layers,
     Turning,
     node_of,
@@ -43,28 +46,39 @@ from optim.arrays import FloatArray, IntArray
 
 
 class Interval(NamedTuple):
-    """Residuals (3,) of an interval, their slopes (3, 10), and those by the fraction f (3,)."""
+    """Residuals (3,) of an interval and their slopes.
+
+    Those by its stations are (3, 10), by the fraction f at which it turns (3,), and by t and d of
+    the station ahead of it (3, 2).
+    """
 
     R: FloatArray
     J: FloatArray
     by_f: FloatArray
+    before: FloatArray
 
 
 @njit
 def empty_interval() -> Interval:
     """Return room for the equations of an interval."""
-    return Interval(np.zeros(EQUATIONS), np.zeros((EQUATIONS, COLUMNS)), np.zeros(EQUATIONS))
+    return Interval(
+        np.zeros(EQUATIONS),
+        np.zeros((EQUATIONS, COLUMNS)),
+        np.zeros(EQUATIONS),
+        np.zeros((EQUATIONS, 2)),
+    )
 
 
 @njit
 def gather(interval: Interval, p: int, i: int, sign: float, layers: Layers, C: FloatArray) -> None:
-    """Write one interval's equations as sums of rows and single entries, into C (3, 9).
+    """Write one interval's equations as sums of rows and single entries, into C (3, 12).
 
     d(ln delta*) = dM/M - dq/q and d(ln u) = kappa dq/q, signed, so that signs cancel. `sign` is
     d(xi)/d(s0) of the side: the length from the stagnation point moves with it.
     """
-    R, J, by_f = interval
+    R, J, by_f, before = interval
     _, M, q, kappa = layers
+    ahead = max(2 * p - i, 0)
     for row in range(EQUATIONS):
         C[row, UP_T] = J[row, 0]
         C[row, UP_S] = J[row, 3]
@@ -75,6 +89,9 @@ def gather(interval: Interval, p: int, i: int, sign: float, layers: Layers, C: F
         C[row, AT_DOWN] = J[row, 6] / M[i]
         C[row, AT_PLACE] = sign * (J[row, 4] + J[row, 9])
         C[row, AT_RIGHT] = R[row]
+        C[row, T_BEFORE] = before[row, 0]
+        C[row, V_BEFORE] = -before[row, 1] / q[ahead]
+        C[row, AT_BEFORE] = before[row, 1] / M[ahead]
 
 
 @njit
@@ -92,22 +109,27 @@ def fill_interval(
     terms: FloatArray,
     p: int,
     i: int,
-    past: int,
+    k: int,
+    turn: int,
     frac: float,
     Re: float,
     M2: float,
     interval: Interval,
 ) -> None:
-    """Fill residuals and slopes of the interval from p to i, `past` stations past transition."""
-    R, J, by_f = interval
+    """Fill residuals and slopes of a side's k-th interval, from p to i; the `turn`-th one turns."""
+    R, J, by_f, before = interval
     by_f[:] = 0.0
-    if past < 0:
+    before[:] = 0.0
+    if k < turn:
         plain_interval(LAMINAR, X[p], X[i], terms[p], terms[i], R, J)
         J[2, 8] = 1.0
         return
     station_terms(TURBULENT, X[i], Re, M2, terms[i])
-    if past == 0:
-        transition_interval(X[p], X[i], terms[p], terms[i], frac, Re, M2, R, J, by_f)
+    if k == turn:
+        x0 = X[2 * p - i] if k > 1 else X[p]
+        transition_interval(
+            x0, X[p], X[i], terms[p], terms[i], frac, k > 1, Re, M2, R, J, by_f, before
+        )
     else:
         plain_interval(TURBULENT, X[p], X[i], terms[p], terms[i], R, J)
 
@@ -119,7 +141,7 @@ def lead_interval(interval: Interval, xi: float, kappa: float) -> None:
     That station has the stagnation point's H and a speed in step with its length and the slope
     there, which takes the place of the fraction f. `kappa` is d(ln u)/d(ln q) at it.
     """
-    _, J, by_f = interval
+    _, J, by_f, _ = interval
     for row in range(EQUATIONS):
         J[row, 0] += J[row, 1]
         by_f[row] = kappa * J[row, 2]
@@ -152,7 +174,7 @@ def side_equations(
     for k in range(1, stations_of(side, js, n)):
         p = i
         i = node_of(side, k, js)
-        fill_interval(X, terms, p, i, k - turn, frac, Re, M2, interval)
+        fill_interval(X, terms, p, i, k, turn, frac, Re, M2, interval)
         if k == 1:
             lead_interval(interval, X[p, 4], layers.kappa[p])
         gather(interval, p, i, sign, layers, parts[i])
@@ -177,7 +199,7 @@ def wake_equations(
     t, d, s = join_wake(X, gap, turn, n, Re, M2)
     worst = max(abs(t - X[n, 0]), abs(s - X[n, 3]), abs(X[n, 1] - d))
     interval = empty_interval()
-    R, J, _ = interval
+    R, J, _, _ = interval
     station_terms(WAKE, X[n], Re, M2, terms[n])
     for i in range(n + 1, len(X)):
         station_terms(WAKE, X[i], Re, M2, terms[i])

@@ -109,6 +109,8 @@ def close_station(
     R = np.zeros(EQUATIONS)
     J = np.zeros((EQUATIONS, COLUMNS))
     by_f = np.zeros(EQUATIONS)
+    before = np.zeros((EQUATIONS, 2))
+    ahead = False  # a march knows the station at hand alone
     small = np.empty((3, 3))
     step = np.zeros(3)
     speed = math.exp(x2[2])
@@ -124,7 +126,7 @@ def close_station(
         if f < 0.0:
             plain_interval(kind, x1, x2, a, b, R, J)
         else:
-            transition_interval(x1, x2, a, b, f, Re, M2, R, J, by_f)
+            transition_interval(x1, x1, x2, a, b, f, ahead, Re, M2, R, J, by_f, before)
         if kind == LAMINAR:
             J[2, 8] = 1.0
         worst = max(abs(R[0]), abs(R[1]), abs(R[2]))

@@ -162,7 +162,7 @@ class SectionEvaluator:
         if math.isnan(alpha):
             return SectionFlow(point, Outcome.OUT_OF_RANGE, self.panels), None
         spent = 0
-        attempt = Attempt(None, 0, math.inf)
+        attempt = Attempt(None, 0, math.nan)
         if near is not None and _is_near(near, alpha, point.reynolds):
             attempt = self._attempt(point, alpha, near)
             spent += attempt.iterations
@@ -192,11 +192,11 @@ class SectionEvaluator:
         Without a neighbour the march goes along the inviscid flow.
         """
         spent = 0
-        residual = math.inf
+        residual = math.nan
         for first in self._starts(point, near):
             state = first(point, alpha, near)
             if state is None:
-                residual = math.inf
+                residual = math.nan
                 continue
             attempt = self._iterate(point, state)
             spent += attempt.iterations
@@ -291,7 +291,9 @@ class SectionEvaluator:
             point.n_factor, point.reynolds, point.mach, tsien_parameter(point.mach),
             BUDGET, TOLERANCE, np.zeros((BUDGET + 1, 2)),
         )  # fmt: skip
-        return Attempt(first if done else None, iterations, residual)
+        # a lost iteration may end with an infinite one, which says no more than none
+        known = residual if math.isfinite(residual) else math.nan
+        return Attempt(first if done else None, iterations, known)
 
     def _continue(self, point: OperatingPoint, alpha: float) -> Attempt:
         """Walk from an easier angle to the one wanted, halving the steps that fail.

@@ -53,6 +53,11 @@ UP, DOWN = 0, 5
 XI = 4
 """Column of the length within a station."""
 
+INTO_NEXT = 4
+"""Power of the fraction by which the state at transition passes from the one extrapolated along the
+laminar layer to the one interpolated: the equations then go over smoothly into those of the next
+interval when transition passes a station."""
+
 FREE, FORCED, HELD = 0, 1, 2
 """Why an interval turns turbulent: amplification, a trip, or only for the moment."""
 
@@ -225,6 +230,57 @@ def between(x1: FloatArray, x2: FloatArray, f: float, out: FloatArray) -> None:
 
 
 @njit
+def turning_state(
+    x0: FloatArray,
+    x1: FloatArray,
+    x2: FloatArray,
+    f: float,
+    ahead: bool,  # noqa: FBT001  compiled functions have no keyword-only arguments
+    out: FloatArray,
+    weights: FloatArray,
+) -> None:
+    """Fill the state at transition, and its weights and slopes.
+
+    Thicknesses are extrapolated along the laminar layer from the stations x0 and x1: interpolated
+    towards the turbulent station x2, their ratio and the starting stress with it would hang on the
+    fraction f. Without a station ahead they are interpolated, as the speed is.
+
+    Parameters
+    ----------
+    out : (5,) array
+        Filled but for its place 3.
+    weights : (4,) array
+        Filled with the shares of x0, x1 and x2 in the thicknesses; the last is the share that is
+        extrapolated.
+    """
+    between(x1, x2, f, out)
+    weights[0], weights[1], weights[2], weights[3] = 0.0, 1.0 - f, f, 0.0
+    if not ahead:
+        return
+    own = 1.0 - f**INTO_NEXT
+    reach = f * (x2[XI] - x1[XI]) / (x1[XI] - x0[XI])
+    weights[0] = -own * reach
+    weights[1] = own * (1.0 + reach) + (1.0 - own) * (1.0 - f)
+    weights[2] = (1.0 - own) * f
+    weights[3] = own
+    for k in range(2):
+        out[k] = weights[0] * x0[k] + weights[1] * x1[k] + weights[2] * x2[k]
+
+
+@njit
+def turning_rise(
+    x0: FloatArray, x1: FloatArray, x2: FloatArray, f: float, own: float, k: int
+) -> float:
+    """Return the slope by f of `turning_state` for a thickness (k = 0, 1) of the share `own`."""
+    chord = x2[k] - x1[k]
+    if own == 0.0:
+        return chord
+    tangent = (x1[k] - x0[k]) * (x2[XI] - x1[XI]) / (x1[XI] - x0[XI])
+    turned = INTO_NEXT * f ** (INTO_NEXT - 1) * f * (chord - tangent)
+    return own * tangent + (1.0 - own) * chord + turned
+
+
+@njit
 def growth_rise(A1: float, A0: float, ratio: float) -> tuple[float, float, float]:
     """Return the change of growth over an interval, extrapolated, and its slopes by A1 and A0.
 
@@ -263,63 +319,62 @@ def fraction_at(N: float, A1: float, rise: float, step: float, critical: float) 
 
 @njit
 def transition_interval(
+    x0: FloatArray,
     x1: FloatArray,
     x2: FloatArray,
     a: FloatArray,
     b: FloatArray,
     f: float,
+    ahead: bool,  # noqa: FBT001  compiled functions have no keyword-only arguments
     Re: float,
     M2: float,
     R: FloatArray,
     J: FloatArray,
     by_f: FloatArray,
+    before: FloatArray,
 ) -> None:
     """Fill residuals and slopes of an interval that turns turbulent at the fraction f.
 
     Parameters
     ----------
-    x1, x2 : (5,) array
-        Stations; x2 holds ln sqrt(Ct) in place 3.
+    x0, x1, x2 : (5,) array
+        Stations; x2 holds ln sqrt(Ct) in place 3. x0, the one ahead of the interval, counts only if
+        `ahead`.
     a, b : (6, 5) array
         Laminar terms of x1, turbulent terms of x2.
     f : float
         Where, as a fraction of the interval.
-    by_f : (3,) array
-        Filled with the slopes of the residuals by f.
+    by_f, before : (3,), (3, 2) array
+        Filled with the slopes of the residuals by f, and by t and d of x0.
     """
     middle = np.empty(SLOPES)
-    between(x1, x2, f, middle)
+    weights = np.empty(4)
+    turning_state(x0, x1, x2, f, ahead, middle, weights)
     lam = np.empty((TERMS, SLOPES))
     tur = np.empty((TERMS, SLOPES))
     laminar_station(middle[0], middle[1], middle[2], Re, M2, growing=False, out=lam)
-    start, by_t, by_d, by_v = starting_stress(middle[0], middle[1], middle[2], Re, M2)
-    middle[3] = start
+    by_start = np.zeros(SLOPES)
+    start = starting_stress(middle[0], middle[1], middle[2], Re, M2)
+    middle[3], by_start[0], by_start[1], by_start[2] = start
     station_terms(TURBULENT, middle, Re, M2, tur)
     Ra = np.zeros(EQUATIONS)
     Ja = np.zeros((EQUATIONS, COLUMNS))
     Jb = np.zeros((EQUATIONS, COLUMNS))
     plain_interval(LAMINAR, x1, middle, a, lam, Ra, Ja)
     plain_interval(TURBULENT, middle, x2, tur, b, R, Jb)
-    J[:] = 0.0
+    R += Ra
     for row in range(EQUATIONS):
-        if row < 2:
-            R[row] += Ra[row]
         by_f[row] = 0.0
         for k in range(SLOPES):
+            J[row, UP + k] = Ja[row, UP + k]
+            J[row, DOWN + k] = Jb[row, DOWN + k]
             if k == 3:
                 continue
-            middle_k = Jb[row, UP + k]
-            if k == 0:
-                middle_k += Jb[row, UP + 3] * by_t
-            elif k == 1:
-                middle_k += Jb[row, UP + 3] * by_d
-            elif k == 2:
-                middle_k += Jb[row, UP + 3] * by_v
-            if row < 2:
-                middle_k += Ja[row, DOWN + k]
-                J[row, UP + k] += Ja[row, UP + k]
-            J[row, UP + k] += (1.0 - f) * middle_k
-            J[row, DOWN + k] += f * middle_k
-            by_f[row] += middle_k * (x2[k] - x1[k])
-        for k in range(SLOPES):
-            J[row, DOWN + k] += Jb[row, DOWN + k]
+            by_middle = Ja[row, DOWN + k] + Jb[row, UP + k] + Jb[row, UP + 3] * by_start[k]
+            thickness = k < 2
+            J[row, UP + k] += (weights[1] if thickness else 1.0 - f) * by_middle
+            J[row, DOWN + k] += (weights[2] if thickness else f) * by_middle
+            rise = turning_rise(x0, x1, x2, f, weights[3] if thickness else 0.0, k)
+            by_f[row] += by_middle * rise
+            if thickness:
+                before[row, k] = weights[0] * by_middle

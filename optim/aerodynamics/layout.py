@@ -109,7 +109,10 @@ UP_T, UP_S, UP_V, DOWN_V, BY_TURN, AT_UP, AT_DOWN, AT_PLACE, AT_RIGHT = range(9)
 """What an equation of an interval is made of: rows of t, s and q upstream, of q downstream and of
 the fraction at which it turns, and single entries."""
 
-PARTS = 9
+T_BEFORE, V_BEFORE, AT_BEFORE = 9, 10, 11
+"""And where it turns: rows of t and q, and an entry, of the station ahead of the upstream one."""
+
+PARTS = 12
 """Number of these."""
 
 

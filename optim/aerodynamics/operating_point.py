@@ -119,7 +119,7 @@ class SectionFlow:
     iterations : int
         Newton iterations of all attempts.
     residual : float
-        Largest residual of the boundary-layer equations at the end [-].
+        Largest residual of the boundary-layer equations at the end [-]; not-a-number if unknown.
     """
 
     point: OperatingPoint

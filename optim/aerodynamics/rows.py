@@ -16,6 +16,7 @@ from optim.aerodynamics.interval import FREE, growth_rise
 from optim.aerodynamics.kernels import njit
 from optim.aerodynamics.layer import LAMINAR, THIRD, TURBULENT, WAKE, starting_stress
 from optim.aerodynamics.layout import (
+    AT_BEFORE,
     AT_DOWN,
     AT_PLACE,
     AT_RIGHT,
@@ -26,10 +27,12 @@ from optim.aerodynamics.layout import (
     NEVER,
     PLACE,
     RIGHT,
+    T_BEFORE,
     UP_S,
     UP_T,
     UP_V,
     UPPER,
+    V_BEFORE,
     Layers,
     Rows,
     Turning,
@@ -53,15 +56,6 @@ def add_row(out: FloatArray, c: float, row: FloatArray) -> None:
     """Add c times a row."""
     for j in range(len(out)):
         out[j] += c * row[j]
-
-
-class Interval(NamedTuple):
-    """Residuals (3,), their slopes (3, 10) and those by the fraction f (3,), the parts (3, 9)."""
-
-    R: FloatArray
-    J: FloatArray
-    by_f: FloatArray
-    C: FloatArray
 
 
 @njit
@@ -114,6 +108,20 @@ def fill_station(
     combine(rows.A[i], C[1], up, V[p], V[i], turn, p, i)
     if kind != LAMINAR:
         combine(down.S, C[2], up, V[p], V[i], turn, p, i)
+
+
+@njit
+def add_before(rows: Rows, down: Station, before: FloatArray, ahead: int, i: int) -> None:
+    """Add what the station ahead of a turning interval has in the rows of its end, station i.
+
+    `before` is the change of t there.
+    """
+    for row in range(3):
+        c = rows.parts[i, row]
+        out = down.T if row == 0 else (rows.A[i] if row == 1 else down.S)
+        add_row(out, c[T_BEFORE], before)
+        add_row(out, c[V_BEFORE], rows.V[ahead])
+        out[ahead] += c[AT_BEFORE]
 
 
 @njit
@@ -207,6 +215,7 @@ def fill_side(
         place[PLACE] = by_N * (BACKGROUND if side == UPPER else -BACKGROUND)
     up = empty_station(len(place))
     down = empty_station(len(place))
+    before = np.zeros(len(place))
     up.T[:] = rows.lead[side]
     i = node_of(side, 0, js)
     for k in range(1, stations_of(side, js, n)):
@@ -215,7 +224,11 @@ def fill_side(
         if free and k <= turn:
             add_growth(place, weights[k - 1], terms[p, THIRD], layers, rows, up, p)
         turned = rows.slope if k == 1 else place
+        if k == turn:
+            before[:] = down.T
         fill_station(rows, up, down, turned, p, i, LAMINAR if k < turn else TURBULENT)
+        if k == turn and k > 1:
+            add_before(rows, down, before, 2 * p - i, i)
         up, down = down, up
     return up
 
@@ -318,6 +331,12 @@ def part_change(
 
 
 @njit
+def before_change(c: FloatArray, ahead: FloatArray, dM: float) -> float:
+    """Return what the station ahead of a turning interval adds to a change; see `add_before`."""
+    return float(c[T_BEFORE] * ahead[0] + c[V_BEFORE] * ahead[2] + c[AT_BEFORE] * dM)
+
+
+@njit
 def side_changes(
     rows: Rows, z: FloatArray, js: int, n: int, side: int, turn: int, out: FloatArray
 ) -> None:
@@ -332,6 +351,9 @@ def side_changes(
         C = rows.parts[i]
         out[i, 0] = part_change(C[0], out[p], out[i, 2], turned, z, p, i)
         out[i, 1] = 0.0 if k < turn else part_change(C[2], out[p], out[i, 2], turned, z, p, i)
+        if k == turn and k > 1:
+            out[i, 0] += before_change(C[0], out[2 * p - i], z[2 * p - i])
+            out[i, 1] += before_change(C[2], out[2 * p - i], z[2 * p - i])
         if k == 1:
             turned = np.dot(rows.place[side], z)
 

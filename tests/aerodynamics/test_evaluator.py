@@ -426,3 +426,10 @@ def test_uncompiled_kernels_give_the_same_flow():
         assert words[0] == "converged"
         answers.append([float(word) for word in words[1:]])
     assert answers[1] == pytest.approx(answers[0], abs=1e-9)
+
+
+@pytest.mark.parametrize("angle", [-40.0, 35.0, 60.0])
+def test_a_lost_flow_has_a_residual_that_can_be_recorded(angle, naca):
+    """Archives take finite numbers and not-a-number: a lost iteration may end with neither."""
+    flow = naca("0012").flow(at(angle, reynolds=1e5))
+    assert flow.converged or not math.isinf(flow.residual)

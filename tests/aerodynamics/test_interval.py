@@ -84,7 +84,10 @@ def test_slopes_of_an_interval_that_turns_turbulent(fraction, differences):
             R, J, by_f = np.zeros(3), np.zeros((3, 10)), np.zeros(3)
             a, b = terms(v[:5], LAMINAR, Re, M2), terms(v[5:10], TURBULENT, Re, M2)
             x1, x2 = v[:5].copy(), v[5:10].copy()
-            transition_interval(x1, x2, a, b, v[10], Re, M2, R, J, by_f)
+            before = np.zeros((3, 2))
+            ahead_counts = False
+            transition_interval(x1, x1, x2, a, b, v[10], ahead_counts, Re, M2, R, J, by_f, before)
+            assert not before.any()
             return R, np.c_[J, by_f]
 
         v = np.r_[z, fraction]
@@ -92,6 +95,34 @@ def test_slopes_of_an_interval_that_turns_turbulent(fraction, differences):
         found = differences(lambda v, f=residuals: f(v)[0], v, np.r_[steps(z), 1e-6])
         size = np.abs(J).max(axis=1, keepdims=True)
         assert np.max(np.abs(found - J) / size) < 1e-5, (z, Re, M2)
+
+
+@pytest.mark.parametrize("fraction", [0.02, 0.4, 0.97])
+def test_slopes_of_an_interval_that_turns_behind_another(fraction, differences):
+    """With the laminar station ahead: by its t and d too, and by a shift of all lengths."""
+    for z, Re, M2 in pairs(11, 60, laminar=True):
+        z[6] = z[5] + math.log(1.4 + 0.3 * abs(math.sin(z[0])))
+        step = 0.8 * (z[9] - z[4])
+        ahead = (z[0] - 0.04, z[1] - 0.06)
+
+        def residuals(v, Re=Re, M2=M2, step=step):
+            R, J, by_f, before = np.zeros(3), np.zeros((3, 10)), np.zeros(3), np.zeros((3, 2))
+            x1, x2 = v[:5].copy(), v[5:10].copy()
+            x1[4] += v[13]
+            x2[4] += v[13]
+            x0 = np.array([v[11], v[12], 0.0, 0.0, x1[4] - step])
+            a, b = terms(x1, LAMINAR, Re, M2), terms(x2, TURBULENT, Re, M2)
+            ahead_counts = True
+            transition_interval(x0, x1, x2, a, b, v[10], ahead_counts, Re, M2, R, J, by_f, before)
+            return R, np.c_[J, by_f, before, J[:, XI[0]] + J[:, XI[1]]]
+
+        v = np.r_[z, fraction, ahead, 0.0]
+        J = residuals(v)[1]
+        h = np.r_[steps(z), 1e-6, 1e-6, 1e-6, 1e-6 * z[4]]
+        found = differences(lambda v, f=residuals: f(v)[0], v, h)
+        kept = [k for k in range(14) if k not in XI]  # lengths only ever move together
+        size = np.abs(J).max(axis=1, keepdims=True)
+        assert np.max(np.abs(found - J)[:, kept] / size) < 1e-5, (z, Re, M2)
 
 
 @pytest.mark.parametrize("fraction", [0.0, 1.0])
@@ -102,7 +133,9 @@ def test_an_interval_that_turns_at_an_end_is_of_one_kind(fraction):
     R, J, by_f = np.zeros(3), np.zeros((3, 10)), np.zeros(3)
     a, b = terms(z[:5], LAMINAR, Re, M2), terms(z[5:], TURBULENT, Re, M2)
     x1, x2 = z[:5].copy(), z[5:].copy()
-    transition_interval(x1, x2, a, b, fraction, Re, M2, R, J, by_f)
+    before = np.zeros((3, 2))
+    ahead_counts = False
+    transition_interval(x1, x1, x2, a, b, fraction, ahead_counts, Re, M2, R, J, by_f, before)
     plain, K = np.zeros(3), np.zeros((3, 10))
     kind = LAMINAR if fraction == 1.0 else TURBULENT
     plain_interval(kind, x1, x2, terms(x1, kind, Re, M2), terms(x2, kind, Re, M2), plain, K)
