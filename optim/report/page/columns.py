@@ -19,6 +19,10 @@ OBJECTIVE, LIMIT, MARGIN, SECTION = "Objectives", "Limits", "Margins", "Section"
 """Groups of columns; each condition is one more."""
 
 
+VIOLATION = "violation"
+"""Key of the column of what is missed in all."""
+
+
 @dataclass(frozen=True)
 class Column:
     """One quantity of all shown designs.
@@ -95,6 +99,7 @@ def columns(run: Run, judgement: Judgement, rows: list[int]) -> list[Column]:
                 plain(name),
                 name,
             )
+    others.append(_violation(judgement, rows))
     return _judged(judgement, rows) + [one for one in others if one.varies]
 
 
@@ -112,6 +117,13 @@ def _judged(judgement: Judgement, rows: list[int]) -> list[Column]:
         for one, values in zip(judgement.limits, judgement.margins[rows].T, strict=True)
     ]
     return aims + limits + margins
+
+
+def _violation(judgement: Judgement, rows: list[int]) -> Column:
+    """Return the sum of what is missed of all limits over their scales."""
+    missed = judgement.violation[rows]
+    known = np.where(np.isfinite(missed), missed, np.nan)
+    return Column(VIOLATION, "sum of what is missed", "", MARGIN, known)
 
 
 def _recorded(

@@ -74,11 +74,11 @@ def verdict_of(volumes: list[float]) -> tuple[str, str, float | None]:
         return "too short to tell", said, None
     part = max(2, round(LAST_PART * len(volumes)))
     gain = (volumes[-1] - volumes[-1 - part]) / volumes[-1]
-    added = f"the last {part} of {len(volumes)} generations added {100.0 * gain:.2g} %"
+    added = f"The last {part} of {len(volumes)} generations added {100.0 * gain:.2g} %"
     if gain < SETTLED_GAIN:
-        return "settled", f"Settled: {added} to the hypervolume.", gain
+        return "settled", f"{added} to the hypervolume.", gain
     more = "more generations are likely to find more."
-    return "still rising", f"Still rising: {added} to the hypervolume; {more}", gain
+    return "still rising", f"{added} to the hypervolume; {more}", gain
 
 
 def ending_fields(run: Run) -> list[Document]:

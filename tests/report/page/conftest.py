@@ -35,6 +35,18 @@ def tight_document(documented, recorder, study_text, tmp_path_factory):
     return documented(recorder(path, study_text.replace("min: 1.40", "min: 4.0"), generations=2))
 
 
+@pytest.fixture(scope="session")
+def large_document(documented, recorder, study_text, tmp_path_factory):
+    """A document of as many designs as a page holds, at five conditions, all of them feasible."""
+    slow = "  slow: {speed: 12.5 m/s, lift: maximum}\n"
+    more = "  dash: {speed: 25 m/s}\n  dirty: {speed: 18 m/s, transition: {upper: 5 %}}\n"
+    easy = {slow: slow + more, "1.40": "0.5", "min: 10 %": "min: 7 %", "17 mm": "10 mm"}
+    for found, changed in easy.items():
+        study_text = study_text.replace(found, changed)
+    path = tmp_path_factory.mktemp("large") / "large.h5"
+    return documented(recorder(path, study_text, generations=22))
+
+
 HOSTILE = (
     "<img src=x onerror=window.harmed=1>",
     "</script><script>window.harmed=1</script>",

@@ -156,6 +156,9 @@ def test_nothing_feasible_says_why_and_shows_the_least_violated(tight_document):
     assert tight_document["progress"]["verdict"] == "nothing feasible"
     kinds = tight_document["designs"]["kind"]
     assert set(kinds) == {MISSED}
+    np.testing.assert_allclose(
+        column(tight_document, "violation"), tight_document["designs"]["violation"], rtol=1e-6
+    )
     violation = tight_document["designs"]["violation"][1:]
     assert violation == sorted(violation)
     assert tight_document["designs"]["rule"] == "nothing"

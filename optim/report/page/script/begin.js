@@ -58,7 +58,7 @@ function begin() {
     tie(models);
     placeDesigns(models);
     findVisible(models);
-    takeUp(kept() ?? { ids: markedDesigns().map((k) => page.designs.id[k]), notes: {} });
+    takeUp(kept() ?? { ids: atFirst().map((k) => page.designs.id[k]), notes: {} });
   } else {
     sayStatus();
   }

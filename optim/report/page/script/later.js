@@ -20,9 +20,11 @@ function showProgress() {
 
 async function beginLater() {
   const parts = JSON.parse(byId("later").textContent);
-  for (const [name, part] of Object.entries(parts)) await Bokeh.embed.embed_item(part, `later-${name}`);
-  showProgress();
+  for (const [name, part] of Object.entries(parts)) {
+    if (count) await Bokeh.embed.embed_item(part, `later-${name}`);
+  }
   if (count) {
+    showProgress();
     const models = laterModels();
     beginCurves(models);
     showOutlines(models);

@@ -2,8 +2,13 @@
 
 const rows = [];
 
+const VIOLATION = "violation";
+
+// Where nothing is feasible, what is missed in all counts most.
 function tableColumns() {
+  const missed = page.front_size === 0 && columns.has(VIOLATION);
   return [
+    ...(missed ? [{ key: VIOLATION, head: columns.get(VIOLATION).label, wanted: "0 is feasible" }] : []),
     ...page.aims.map((aim) => ({ key: aim.key, head: withUnit(columns.get(aim.key)), wanted: `${aim.sense}d` })),
     ...page.bounds.map((bound) => ({
       key: bound.value, margin: bound.margin,
@@ -24,7 +29,7 @@ function headCell(column) {
 
 function numberCell(column, k) {
   const here = value(column.key, k);
-  if (!column.margin) return element("td", { class: "num" }, shown(here));
+  if (!column.margin || !Number.isFinite(here)) return element("td", { class: "num" }, shown(here));
   const margin = value(column.margin, k);
   const active = margin >= 0 && margin < page.active_margin ? "*" : "";
   const words = `${shown(here)} (${signed(margin, 2)}${active})`;
@@ -84,7 +89,8 @@ function beginTable() {
   );
   byId("designs").tHead.append(head);
   for (let k = 0; k < count; k += 1) rows.push(makeRow(k, shownColumns));
-  state.sort = { key: page.aims[0].key, falling: page.aims[0].sense === "maximise" };
+  const first = shownColumns[0].key;
+  state.sort = { key: first, falling: first !== VIOLATION && page.aims[0].sense === "maximise" };
   orderRows();
   byId("only-chosen").addEventListener("change", (event) => {
     state.onlyChosen = event.target.checked;

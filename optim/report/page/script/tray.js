@@ -79,6 +79,12 @@ function markedDesigns() {
   return Object.keys(page.designs.marks).map(Number);
 }
 
+// What is marked, or where nothing is, what has been flown.
+function atFirst() {
+  const marked = markedDesigns();
+  return marked.length ? marked : Object.keys(page.flown).map(Number);
+}
+
 function beginTray() {
   byId("tray-clear").addEventListener("click", () => {
     state.tray = [];
