@@ -6,10 +6,10 @@ import math
 from collections.abc import Iterator
 from typing import Any
 
-from optim.cli.console import CAUTION, CAUTION_LIFT, NOT_MODELLED
 from optim.cli.front_text import flat_point
 from optim.cli.output import number, table
 from optim.outcomes import Outcome
+from optim.report.cautions import CAUTION, CAUTION_LIFT, NOT_MODELLED
 
 Document = dict[str, Any]
 

@@ -8,27 +8,6 @@ from typing import TextIO
 
 from optim.errors import Fault, InputError
 
-CAUTION = (
-    "Caution: computed flow about a section, no substitute for tunnel and flight test, "
-    "certification or a licensed engineer; section data are not wing data."
-)
-"""Printed with every result that a person reads."""
-
-CAUTION_LIFT = (
-    "Least certain are maximum lift and what is past it, long bubbles and very low Reynolds "
-    "numbers; the order of maximum lifts is more trustworthy than their values."
-)
-"""Printed where maximum lift is shown."""
-
-CAUTION_FRONT = (
-    "An optimiser exploits the errors of its model: a design better than every measured section "
-    "is a warning. Roughness, gaps, ice and three-dimensional effects are not modelled."
-)
-"""Printed with every front."""
-
-NOT_MODELLED = "Not modelled: roughness, gaps, rain, ice, unsteady and three-dimensional effects."
-"""Printed with every analysis."""
-
 
 def say(line: str) -> None:
     """Write one line to standard error."""

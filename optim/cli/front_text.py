@@ -5,8 +5,9 @@ from __future__ import annotations
 from pathlib import Path
 from typing import Any
 
-from optim.cli.console import CAUTION, CAUTION_FRONT, CAUTION_LIFT, failures
+from optim.cli.console import failures
 from optim.cli.output import number, table
+from optim.report.cautions import CAUTION, CAUTION_FRONT, CAUTION_LIFT
 from optim.report.units import as_read
 
 Document = dict[str, Any]

@@ -10,12 +10,13 @@ from typing import TYPE_CHECKING, Annotated, Any
 import typer
 
 from optim.cli.analysis_text import analysis_rows, analysis_text
-from optim.cli.console import CAUTION, misuse, prepare_kernels, say, show
+from optim.cli.console import misuse, prepare_kernels, say, show
 from optim.cli.flow_options import PANELS, FlowOptions
 from optim.cli.output import number, table, write_csv, write_json
 from optim.cli.section_argument import RecordedDesign, recorded_design, section_of
 from optim.cli.studies import AsJson, Plot
 from optim.errors import Fault, InputError
+from optim.report.cautions import CAUTION
 
 if TYPE_CHECKING:
     from optim.aerodynamics.evaluator import SectionEvaluator

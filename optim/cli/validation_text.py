@@ -5,8 +5,8 @@ from __future__ import annotations
 from itertools import groupby
 from typing import Any
 
-from optim.cli.console import CAUTION, CAUTION_LIFT
 from optim.cli.output import number, table
+from optim.report.cautions import CAUTION, CAUTION_LIFT
 
 Document = dict[str, Any]
 

@@ -11,7 +11,7 @@ import matplotlib as mpl
 import pytest
 
 from optim.cli import app
-from optim.cli.console import CAUTION
+from optim.report.cautions import CAUTION
 from optim.report.validation_figure import source_figure
 from optim.validation import suite
 
