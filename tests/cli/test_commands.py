@@ -8,7 +8,7 @@ import math
 import numpy as np
 import pytest
 
-from optim.archive.reader import open_run
+from optim.archive.reader import equality_digest, open_run
 from optim.geometry.curve import cosine_parameters
 from optim.geometry.naca import naca_section
 from optim.problem.problem import Problem
@@ -286,7 +286,8 @@ class TestExport:
         points = np.loadtxt(path, delimiter=",", skiprows=1)
         assert done.code == 0
         assert points[:, 0].max() == pytest.approx(212.0, abs=1e-6)
-        assert "mm of the curve" in done.err
+        assert "micrometres of the exact curve" in done.err
+        assert "Caution:" in done.err
         assert "warning" not in done.err
         assert done.out == ""
 
@@ -296,3 +297,33 @@ class TestExport:
         assert "0.906 mm thick, not the 0.800 mm" in done.err
         points = np.loadtxt(path, delimiter=",", skiprows=1)
         assert points[0, 1] - points[-1, 1] == pytest.approx(0.8 * 240.0 / 212.0, abs=1e-5)
+
+    def test_json_has_what_the_archive_holds(self, command, run_file, tmp_path):
+        path = tmp_path / "section.json"
+        assert command("export", f"{run_file}#3", "--output", path).code == 0
+        document = json.loads(path.read_text(), parse_constant=pytest.fail)
+        with open_run(run_file) as run:
+            recorded, header = run.evaluation(3), run.header
+            assert document["digests"]["datasets"] == run.digests()
+        assert document["digests"]["run"] == equality_digest(run_file)
+        assert list(document["curve"]["variables"].values()) == recorded["designs"].tolist()
+        assert document["study"]["text"] == header.study_text
+        assert document["provenance"] == dict(header.provenance)
+        margins = [one["margin"] for one in document["constraints"].values()]
+        assert margins == recorded["margins"].tolist()
+        survey = document["conditions"]["survey"]
+        assert survey["flown"]["speed"] == 18.0
+        names = header.condition_quantity_names
+        assert survey["found"]["cd"] == recorded["quantities"][0][names.index("cd")]
+
+    def test_points_and_spacing_are_those_asked_for(self, command, run_file, tmp_path):
+        path = tmp_path / "section.csv"
+        words = ("export", f"{run_file}#3", "--output", path, "--points", "40", "--spacing", "even")
+        assert command(*words).code == 0
+        assert len(path.read_text().splitlines()) == 1 + 79
+
+    def test_few_points_for_a_spline_are_warned_of(self, command, run_file, tmp_path):
+        path = tmp_path / "section.dxf"
+        done = command("export", f"{run_file}#3", "--output", path, "--points", "20")
+        assert "warning: 20 points a side are few" in done.err
+        assert "warning" not in command("export", f"{run_file}#3", "--output", path).err
