@@ -1,4 +1,4 @@
-"""The command that hands a design over to whoever builds it: export."""
+"""The commands that hand a design over to whoever builds it: export, sheet."""
 
 from __future__ import annotations
 
@@ -10,8 +10,17 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
-from optim.cli.console import CAUTION, misuse, say
+from optim.cli.console import (
+    CAUTION,
+    CAUTION_FRONT,
+    CAUTION_LIFT,
+    NOT_MODELLED,
+    misuse,
+    prepare_kernels,
+    say,
+)
 from optim.cli.section_argument import record_of
+from optim.errors import Fault, InputError
 
 if TYPE_CHECKING:
     from optim.report.design_record import DesignRecord
@@ -145,4 +154,31 @@ def _length(text: str) -> float:
         raise misuse(f"--chord: {error}") from error
 
 
-COMMANDS: tuple[Callable[..., None], ...] = (export,)
+def sheet(
+    word: Design,
+    output: Annotated[
+        Path | None,
+        typer.Option(metavar="SHEET.pdf", help="RUN-ID.pdf beside the run unless given."),
+    ] = None,
+) -> None:
+    """Print a design on two A4 pages: dimensions, performance, loads, cautions."""
+    if output is not None and output.suffix.lower() != ".pdf":
+        raise InputError([Fault("accepted is a file name that ends in .pdf.", file=str(output))])
+    from optim.report.design_sheet import design_sheet  # noqa: PLC0415
+    from optim.report.off_design import off_design  # noqa: PLC0415
+    from optim.report.paper import print_pages  # noqa: PLC0415
+
+    record = record_of(word)
+    prepare_kernels()
+    from optim.aerodynamics.evaluator import SectionEvaluator  # noqa: PLC0415
+
+    problem = record.problem
+    series = off_design(record.section, problem.conditions, problem.panels, SectionEvaluator)
+    pages = design_sheet(record, series, (CAUTION, CAUTION_LIFT, CAUTION_FRONT, NOT_MODELLED))
+    path = output or record.run.with_name(f"{record.run.stem}-{record.entry['id']}.pdf")
+    print_pages(pages, path, record.title)
+    say(f"{path}: two A4 pages about {record.title}.")
+    say(CAUTION)
+
+
+COMMANDS: tuple[Callable[..., None], ...] = (export, sheet)

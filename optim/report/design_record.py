@@ -5,6 +5,7 @@ from __future__ import annotations
 import json
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
+from pathlib import Path
 from typing import Any
 
 from optim.archive.digest import combined_digest
@@ -27,6 +28,8 @@ class DesignRecord:
 
     Attributes
     ----------
+    run : Path
+        RUN.h5.
     name : str
         ``RUN.h5#ID``.
     section : Section
@@ -49,6 +52,7 @@ class DesignRecord:
         Dataset -> SHA-256.
     """
 
+    run: Path
     name: str
     section: Section
     study: Study
@@ -149,6 +153,7 @@ def design_record(run: Run, row: int) -> DesignRecord:
     judgement = as_recorded(run)
     entry, baseline = design_entries(run, judgement, [row, BASELINE])
     return DesignRecord(
+        run=run.path,
         name=name,
         section=recorded_section(problem, design, name),
         study=study,

@@ -4,8 +4,10 @@ import csv
 import io
 import json
 import math
+from dataclasses import replace
 
 import numpy as np
+import pypdfium2
 import pytest
 
 from optim.archive.reader import equality_digest, open_run
@@ -327,3 +329,39 @@ class TestExport:
         done = command("export", f"{run_file}#3", "--output", path, "--points", "20")
         assert "warning: 20 points a side are few" in done.err
         assert "warning" not in command("export", f"{run_file}#3", "--output", path).err
+
+
+@pytest.mark.usefixtures("closed_form")
+class TestSheet:
+    @pytest.fixture(autouse=True)
+    def swept(self, monkeypatch):
+        """Let sweeps fly the closed-form flows."""
+
+        def sweep(evaluator, point, angles):
+            return evaluator.flows([replace(point, alpha=a, cl=None) for a in angles]), None
+
+        monkeypatch.setattr("optim.aerodynamics.sweep.sweep", sweep)
+        monkeypatch.setattr("optim.cli.handover.prepare_kernels", lambda: None)
+
+    def test_is_two_pages_where_it_is_asked_for(self, command, run_file, tmp_path):
+        path = tmp_path / "design.pdf"
+        done = command("sheet", f"{run_file}#3", "--output", path)
+        printed = pypdfium2.PdfDocument(path)
+        pages = [page.get_textpage().get_text_bounded() for page in printed]
+        printed.close()
+        assert done.code == 0
+        assert done.out == ""
+        assert "Caution:" in done.err
+        assert len(pages) == 2
+        assert all("no substitute for tunnel and flight test" in page for page in pages)
+        assert "the order of maximum lifts is more trustworthy" in " ".join(pages[1].split())
+
+    def test_is_beside_the_run_under_its_name_unless_told(self, command, recorded_run, tmp_path):
+        run_file = recorded_run.record(tmp_path / "glider.h5", generations=1)
+        done = command("sheet", f"{run_file}#3")
+        assert str(tmp_path / "glider-3.pdf") in done.err
+        assert (tmp_path / "glider-3.pdf").read_bytes().startswith(b"%PDF")
+
+    def test_dollars_and_brackets_in_a_name_are_text(self, command, recorded_run, tmp_path):
+        run_file = recorded_run.record(tmp_path / "a$x_{$b^.h5", generations=1)
+        assert command("sheet", f"{run_file}#3").code == 0

@@ -126,6 +126,8 @@ def test_nan_is_told_with_its_line(command, tmp_path):
         (("export", "nowhere.h5#3", "--output", "a.dxf"), "no such run"),
         (("export", "nowhere.h5#3", "--output", "a.dxf", "--points", "5"), "20"),
         (("export", "nowhere.h5#3", "--output", "a.dxf", "--spacing", "dense"), "cosine"),
+        (("sheet", "naca:2412"), "RUN.h5#ID"),
+        (("sheet", "nowhere.h5#3", "--output", "a.png"), ".pdf"),
         (("front", "nowhere.h5"), "no such run"),
         (("status", "nowhere.h5"), "no such run"),
         (("resume", "nowhere.h5"), "no such run"),

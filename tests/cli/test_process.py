@@ -61,7 +61,7 @@ def test_looking_at_a_run_waits_for_no_compiler_and_no_search(process, run_file,
 
 @pytest.mark.parametrize(
     "words",
-    [("--help",), *[(verb, "--help") for verb in ("check", "run", "validate", "export")]],
+    [("--help",), *[(verb, "--help") for verb in ("check", "run", "validate", "export", "sheet")]],
 )
 def test_help_loads_no_library_of_numbers(process, words):
     heavy = {*HEAVY, "numpy", "scipy", "h5py", "yaml", "pint", "rich"}  # typer has pydantic
