@@ -18,7 +18,7 @@ from typing import Annotated
 
 import typer
 
-from optim.cli import console, handover, runs, sections, studies, validation
+from optim.cli import comparison, console, handover, runs, sections, studies, validation
 from optim.errors import ArchiveDamagedError, InputError, StoppedEarlyError
 
 DONE, BUG, INPUT_AT_FAULT, STOPPED_EARLY, ARCHIVE_DAMAGED = range(5)
@@ -44,7 +44,7 @@ app = typer.Typer(
     rich_markup_mode=None,
 )
 
-for module in (studies, runs, sections, handover, validation):
+for module in (studies, runs, sections, comparison, handover, validation):
     for command in module.COMMANDS:
         app.command()(command)
 

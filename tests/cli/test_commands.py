@@ -365,3 +365,72 @@ class TestSheet:
     def test_dollars_and_brackets_in_a_name_are_text(self, command, recorded_run, tmp_path):
         run_file = recorded_run.record(tmp_path / "a$x_{$b^.h5", generations=1)
         assert command("sheet", f"{run_file}#3").code == 0
+
+
+class TestCompare:
+    @pytest.fixture(autouse=True)
+    def flown(self, closed_form, monkeypatch):
+        """Let comparisons fly the closed-form flows."""
+
+        def sweep(evaluator, point, angles):
+            return evaluator.flows([replace(point, alpha=a, cl=None) for a in angles]), None
+
+        monkeypatch.setattr("optim.validation.flight.sweep", sweep)
+        monkeypatch.setattr("optim.cli.comparison.prepare_kernels", lambda: None)
+        return closed_form
+
+    def test_json_has_a_value_a_column_in_every_row(self, command, run_file, tmp_path):
+        path = tmp_path / "tunnel.csv"
+        path.write_text("# reynolds: 2e5\nalpha,cl,cd\n0,0.25,0.01\n4,0.6,0.011\n")
+        words = (run_file, f"{run_file}#3", "naca:2412", path)
+        done = command("compare", *words, "--json", "--plot", tmp_path / "all.png")
+        document = json.loads(done.out, parse_constant=pytest.fail)
+        assert done.code == 0
+        kinds = [one["kind"] for one in document["columns"]]
+        assert kinds == ["run", "design", "section", "measurement"]
+        assert all(len(row["values"]) == 4 for row in document["rows"])
+        assert len(document["residuals"]) == 2 * 2
+        with open_run(run_file) as run:
+            assert document["hypervolume"]["union"] == run.read("hypervolume")[-1]
+        assert (tmp_path / "all.png").stat().st_size > 1000
+
+    def test_text_names_what_each_letter_is_and_has_the_cautions(self, command, run_file):
+        done = command("compare", run_file, "naca:2412")
+        assert done.out.splitlines()[:2] == [f"A  run {run_file}", "B  section naca:2412"]
+        assert "at survey" in done.out
+        assert "hypervolume of all fronts together" in done.out
+        assert "Caution:" in done.out
+
+    def test_shapes_alone_say_how_to_fly_them(self, command):
+        done = command("compare", "naca:2412", "naca:4412")
+        assert done.code == 0
+        assert "only shapes are compared" in done.err
+        assert "thickness" in done.out
+
+    def test_measurements_alone_are_refused(self, command, tmp_path):
+        path = tmp_path / "tunnel.csv"
+        path.write_text("# reynolds: 2e5\nalpha,cl\n0,0.25\n4,0.6\n")
+        done = command("compare", path, path)
+        assert done.code == 2
+        assert "accepted is a section or a design" in done.err
+
+    def test_exported_points_are_a_section_and_no_polar(self, command, run_file, tmp_path):
+        """Read back, they are turned to the chord line of the point farthest from the edge."""
+        path = tmp_path / "section.csv"
+        command("export", f"{run_file}#3", "--output", path)
+        done = command("compare", f"{run_file}#3", path, "--json")
+        measures = {row["quantity"]: row["values"] for row in json.loads(done.out)["rows"]}
+        kept, read = measures["thickness"]
+        assert read == pytest.approx(kept, abs=1e-5)
+
+    def test_fault_of_a_polar_has_its_place(self, command, tmp_path):
+        path = tmp_path / "tunnel.csv"
+        path.write_text("# reynolds: 2e5\nalpha,cl\n0,0.25\n4,much\n")
+        done = command("compare", "naca:2412", path)
+        assert done.code == 2
+        assert done.err.startswith(f"{path}:4:2: cl:")
+
+    def test_damaged_archive_is_exit_4(self, command, run_file, tmp_path):
+        path = tmp_path / "damaged.h5"
+        path.write_bytes(run_file.read_bytes()[:-4096])
+        assert command("compare", path, run_file).code == 4
