@@ -18,7 +18,7 @@ from typing import Annotated
 
 import typer
 
-from optim.cli import console, page, runs, sections, studies, validation
+from optim.cli import comparison, console, handover, page, runs, sections, studies, validation
 from optim.errors import ArchiveDamagedError, InputError, StoppedEarlyError
 
 DONE, BUG, INPUT_AT_FAULT, STOPPED_EARLY, ARCHIVE_DAMAGED = range(5)
@@ -44,7 +44,7 @@ app = typer.Typer(
     rich_markup_mode=None,
 )
 
-for module in (studies, runs, page, sections, validation):
+for module in (studies, runs, page, sections, comparison, handover, validation):
     for command in module.COMMANDS:
         app.command()(command)
 

@@ -95,7 +95,7 @@ def _notes(document: Document, kept: dict[str, float], run_file: Path) -> list[s
     if document["designs"]:
         one, name = document["designs"][0]["id"], next(iter(document["baseline"]["conditions"]))
         notes.append(f"Look at one with: sectionwright analyse {run_file}#{one} --condition {name}")
-        notes.append(f"Build one with: sectionwright export {run_file}#{one} --output SECTION.csv")
+        notes.append(f"Build one with: sectionwright export {run_file}#{one} --output SECTION.dxf")
     else:
         shares = ", ".join(f"{name} {100.0 * share:.0f} %" for name, share in kept.items())
         notes.append(f"No design keeps every limit. Of the designs keep: {shares or 'no limits'}.")

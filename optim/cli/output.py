@@ -10,21 +10,12 @@ from collections.abc import Mapping, Sequence
 from typing import Any
 
 from optim.cli.console import show
+from optim.report.plain import plain
 
 
 def write_json(document: Mapping[str, Any]) -> None:
     """Write one JSON document to standard output; what is not a finite number is null."""
-    show(json.dumps(_plain(document), indent=1, allow_nan=False, ensure_ascii=False))
-
-
-def _plain(value: Any) -> Any:  # noqa: ANN401  any part of a document
-    if isinstance(value, Mapping):
-        return {str(key): _plain(part) for key, part in value.items()}
-    if isinstance(value, list | tuple):
-        return [_plain(part) for part in value]
-    if isinstance(value, float) and not math.isfinite(value):
-        return None
-    return value
+    show(json.dumps(plain(document), indent=1, allow_nan=False, ensure_ascii=False))
 
 
 def write_csv(rows: Sequence[Mapping[str, Any]]) -> None:
@@ -40,8 +31,8 @@ def write_csv(rows: Sequence[Mapping[str, Any]]) -> None:
 
 
 def _cell(value: Any) -> Any:  # noqa: ANN401  any part of a document
-    plain = _plain(value)
-    return "" if plain is None else repr(plain) if isinstance(plain, float) else plain
+    known = plain(value)
+    return "" if known is None else repr(known) if isinstance(known, float) else known
 
 
 def table(head: Sequence[str], rows: Sequence[Sequence[str]]) -> str:

@@ -3,17 +3,18 @@
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 from optim.cli.console import say
-from optim.errors import Fault, SectionError
+from optim.errors import Fault, InputError, SectionError
 
 if TYPE_CHECKING:
     from optim.arrays import FloatArray
     from optim.geometry.section import Section
     from optim.problem.problem import Problem
+    from optim.report.design_record import DesignRecord
     from optim.study.schema import Study
 
 ACCEPTED = "accepted is naca:2412, a coordinate file, or RUN.h5#ID"
@@ -66,13 +67,9 @@ class RecordedDesign:
         SectionError
             If the design is no section.
         """
-        from optim.geometry.validity import faults  # noqa: PLC0415
+        from optim.report.design_record import recorded_section  # noqa: PLC0415
 
-        section = replace(problem.section(self.design), name=self.name)
-        found = faults(section)
-        if found:
-            raise SectionError([Fault(fault.sentence, file=self.name) for fault in found])
-        return section
+        return recorded_section(problem, self.design, self.name)
 
 
 def recorded_design(text: str) -> RecordedDesign | None:
@@ -85,15 +82,43 @@ def recorded_design(text: str) -> RecordedDesign | None:
     ArchiveDamagedError
         If the run is damaged.
     """
-    matched = _RECORDED.fullmatch(text)
-    if matched is None or Path(text).exists():
+    named = design_named(text)
+    if named is None:
         return None
     from optim.archive.reader import open_run  # noqa: PLC0415  others wait for no HDF5
 
-    path, row = Path(matched["run"]), int(matched["row"])
+    path, row = named
     with open_run(path) as run:
         design = run.evaluation(row)["designs"]
         return RecordedDesign(path, row, run.header.resolved_text, design)
+
+
+def design_named(text: str) -> tuple[Path, int] | None:
+    """Return run and evaluation that ``RUN.h5#ID`` names; None if the text has another form."""
+    matched = _RECORDED.fullmatch(text)
+    if matched is None or Path(text).exists():
+        return None
+    return Path(matched["run"]), int(matched["row"])
+
+
+def record_of(text: str) -> DesignRecord:
+    """Return everything that is recorded of the design that ``RUN.h5#ID`` names.
+
+    Raises
+    ------
+    InputError
+        If it names none, with one line for each reason.
+    ArchiveDamagedError
+        If the run is damaged.
+    """
+    from optim.archive.reader import open_run  # noqa: PLC0415
+    from optim.report.design_record import design_record  # noqa: PLC0415
+
+    named = design_named(text)
+    if named is None:
+        raise InputError([Fault("accepted is a design of a run, RUN.h5#ID.", file=text)])
+    with open_run(named[0]) as run:
+        return design_record(run, named[1])
 
 
 def section_of(text: str) -> Section:

@@ -1,10 +1,9 @@
-"""Commands about single sections: analyse, fit, export."""
+"""Commands about single sections: analyse, fit."""
 
 from __future__ import annotations
 
 from collections.abc import Callable
 from enum import StrEnum
-from pathlib import Path
 from typing import TYPE_CHECKING, Annotated, Any
 
 import typer
@@ -210,55 +209,4 @@ def _parameterisation(shape: Shape, order: int, gap: float) -> Parameterisation:
     return kind(upper=order + 1, lower=order + 1, gap=gap)
 
 
-def export(
-    word: Annotated[str, typer.Argument(metavar="RUN.h5#ID", help="A design of a run.")],
-    output: Annotated[
-        Path, typer.Option(metavar="FILE", help=".csv in mm at the chord, .txt in chords.")
-    ],
-    chord: Annotated[
-        str | None, typer.Option(metavar="LENGTH", help="Such as 240mm; the study's unless given.")
-    ] = None,
-) -> None:
-    """Write a design's points as it is built, read them back and say how true they are."""
-    from optim.report.export import Sheet, write_section  # noqa: PLC0415
-
-    design = recorded_design(word)
-    if design is None:
-        raise InputError([Fault("accepted is a design of a run, RUN.h5#ID.", file=word)])
-    study, problem = design.study_and_problem()
-    section = design.section(problem)
-    built = study.chord if chord is None else _length(chord)
-    gap = section.trailing_edge_gap
-    if abs(built / study.chord - 1.0) > 1e-9:
-        say(
-            f"warning: at a chord of {1e3 * built:g} mm the trailing edge is "
-            f"{1e3 * built * gap:.3f} mm thick, not the {1e3 * study.chord * gap:.3f} mm of the "
-            f"study's {1e3 * study.chord:g} mm; for another chord, run the study with it."
-        )
-    sheet = Sheet(
-        f"{study.study}, design {design.row} of {design.run.name}",
-        (
-            f"chord {1e3 * built:g} mm, trailing edge {1e3 * built * gap:.3f} mm",
-            "x y in chords, from the upper trailing edge around the nose to the lower one",
-            CAUTION,
-        ),
-    )
-    written = write_section(section, built, output, sheet)
-    say(
-        f"{output}: {written.points} points at a chord of {1e3 * built:g} mm; read back, they stay "
-        f"within {1e3 * written.deviation:.4f} mm of the curve."
-    )
-    say(CAUTION)
-
-
-def _length(text: str) -> float:
-    from optim.study.schema import CHORD  # noqa: PLC0415
-    from optim.study.units import UnitError  # noqa: PLC0415
-
-    try:
-        return CHORD.read(text)
-    except UnitError as error:
-        raise misuse(f"--chord: {error}") from error
-
-
-COMMANDS: tuple[Callable[..., None], ...] = (analyse, fit, export)
+COMMANDS: tuple[Callable[..., None], ...] = (analyse, fit)

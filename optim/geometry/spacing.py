@@ -42,11 +42,12 @@ def panel_nodes(section: Section, panels: int) -> FloatArray:
     ValueError
         If there are fewer than ten panels.
     """
-    return section.points(_parameters(panels))
+    return section.points(nose_parameters(panels))
 
 
 @lru_cache(maxsize=32)
-def _parameters(panels: int) -> FloatArray:
+def nose_parameters(panels: int) -> FloatArray:
+    """Return the parameters of the ends of the panels, (panels + 1,); see `panel_nodes`."""
     if panels < LEAST_PANELS:
         raise ValueError(f"A contour needs at least {LEAST_PANELS} panels; found {panels}.")
     xi = np.linspace(0.0, 2.0 * np.pi, panels + 1)

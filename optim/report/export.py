@@ -1,13 +1,15 @@
-"""A section as it is built: points at the real chord, written, read back and compared.
+"""A section as it is built: written at the real chord, read back and compared with its curve.
 
-Full cosine spacing puts many points where the contour bends: at the nose a step is some
-hundred-thousandths of the chord. The number of points is doubled until straight lines between the
-points as written stay within some micrometres or `ENOUGH` points are reached; how far they stray is
-said either way.
+Two kinds of file. Points, .csv and .txt: full cosine spacing puts many where the contour bends,
+and their number is doubled until straight lines between them stay within some micrometres or
+`ENOUGH` are reached. A curve, .dxf, .svg and .json: the spline of `built_curve`. How far either
+strays from the exact curve is measured on the file as it is read back, by a reader that knows
+nothing of how it was written.
 """
 
 from __future__ import annotations
 
+import json
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from pathlib import Path
@@ -17,8 +19,22 @@ import numpy as np
 
 from optim.arrays import FloatArray
 from optim.errors import Fault, InputError
-from optim.geometry.curve import cosine_parameters
 from optim.geometry.section import Section
+from optim.report.built_curve import (
+    DEGREE,
+    LOOKS,
+    MILLIMETRE,
+    BuiltCurve,
+    Spacing,
+    built_curve,
+    distances,
+    sampled,
+    spaced,
+)
+from optim.report.dxf_file import read_dxf, write_dxf
+from optim.report.export_forms import Label, check_form
+from optim.report.plain import plain
+from optim.report.svg_file import read_svg, write_svg
 
 FEWEST, ENOUGH = 240, 960
 """Intervals around the contour: at the least, and where doubling ends."""
@@ -27,27 +43,24 @@ CLOSE_ENOUGH = 5e-6
 """Largest distance of the straight lines between the points from the curve [m]: a tenth of what a
 good mould keeps (rule of thumb)."""
 
-LOOKS = 8
-"""Places between two points at which the distance from the curve is looked at."""
-
-MILLIMETRE = 1e-3
-"""[m]"""
+SPLINE_START = 60
+"""Intervals from which a spline is refined."""
 
 
 @dataclass(frozen=True)
-class Sheet:
-    """What is written beside the points.
+class Density:
+    """How many points, and where.
 
     Attributes
     ----------
-    title : str
-        Which section it is.
-    remarks : tuple of str
-        Further lines, such as the chord and the edge.
+    points : int or None
+        On each side, nose and edge included; None for as many as the curve needs.
+    spacing : str
+        How they are spread.
     """
 
-    title: str
-    remarks: tuple[str, ...]
+    points: int | None = None
+    spacing: Spacing = "cosine"
 
 
 @dataclass(frozen=True)
@@ -57,17 +70,35 @@ class Written:
     Attributes
     ----------
     points : int
-        How many it holds.
+        How many it holds, or through how many its spline passes.
     deviation : float
-        Largest distance of the straight lines between its points from the exact curve [m].
+        Largest normal distance from the exact curve: of the spline, or of the straight lines
+        between the points [m].
+    of_points : float
+        The same of the points alone [m].
+    smooth : bool
+        Whether it holds a spline.
     """
 
     points: int
     deviation: float
+    of_points: float
+    smooth: bool
 
 
-def write_section(section: Section, chord: float, path: Path, sheet: Sheet) -> Written:
-    """Write the points of a section, read the file back and compare it with the curve.
+@dataclass(frozen=True)
+class _Form:
+    """How a kind of file is written, and read back as points in mm, `LOOKS` an interval."""
+
+    write: Callable[[Path, BuiltCurve, Label], None]
+    read: Callable[[Path, float], FloatArray]
+    smooth: bool
+
+
+def write_section(
+    section: Section, chord: float, path: Path, label: Label, density: Density | None = None
+) -> Written:
+    """Write a section, read the file back and compare it with the exact curve.
 
     Parameters
     ----------
@@ -76,9 +107,11 @@ def write_section(section: Section, chord: float, path: Path, sheet: Sheet) -> W
     chord : float
         As built [m].
     path : Path
-        Its suffix says the form: .csv in millimetres, .txt in chords.
-    sheet : Sheet
-        What is written beside the points.
+        Its suffix says the form.
+    label : Label
+        What is written beside the contour.
+    density : Density, optional
+        How many points and where; as many as needed unless given.
 
     Returns
     -------
@@ -90,70 +123,88 @@ def write_section(section: Section, chord: float, path: Path, sheet: Sheet) -> W
     InputError
         If the suffix is not known or the file cannot be written.
     """
-    form = FORMS.get(path.suffix.lower())
-    if form is None:
-        message = f"the form is told by the suffix; accepted is {' or '.join(FORMS)}."
-        raise InputError([Fault(message, file=str(path))])
-    intervals = FEWEST
+    check_form(path)
+    form, asked = _FORMS[path.suffix.lower()], density or Density()
+    free = asked.points is None
+    intervals = 2 * (asked.points - 1) if asked.points else SPLINE_START if form.smooth else FEWEST
     while True:
-        t = cosine_parameters(intervals)
-        _write(path, form.text(section.points(t), chord, sheet))
-        found = _deviation(section, t, form.read(path, chord)) * chord
-        if found <= CLOSE_ENOUGH or intervals >= ENOUGH:
-            return Written(len(t), found)
+        t = spaced(section, intervals, asked.spacing)
+        curve = built_curve(section, chord, t, refine=free and form.smooth)
+        try:
+            form.write(path, curve, label)
+        except OSError as error:
+            message = f"the file cannot be written ({error.strerror}); accepted is another place."
+            raise InputError([Fault(message, file=str(path))]) from error
+        written = _compared(section, chord, form.read(path, chord), smooth=form.smooth)
+        done = form.smooth or not free or written.deviation <= CLOSE_ENOUGH
+        if done or intervals >= ENOUGH:
+            return written
         intervals *= 2
 
 
-def _write(path: Path, text: str) -> None:
-    try:
-        path.write_text(text, encoding="utf-8")
-    except OSError as error:
-        message = f"the file cannot be written ({error.strerror}); accepted is another place."
-        raise InputError([Fault(message, file=str(path))]) from error
+def _compared(section: Section, chord: float, read: FloatArray, *, smooth: bool) -> Written:
+    """Return how far what was read is from the exact curve, its ends from those of the curve."""
+    size = chord / MILLIMETRE
+    off = distances(section, read / size) * chord
+    ends = np.linalg.norm(read[[0, -1]] / size - section.points(np.array([-1.0, 1.0])), axis=1)
+    largest = float(max(off.max(), ends.max() * chord))
+    return Written(len(off[::LOOKS]), largest, float(off[::LOOKS].max()), smooth)
 
 
-def _deviation(section: Section, t: FloatArray, points: FloatArray) -> float:
-    """Return the largest distance of the curve from the straight lines between points [chords].
-
-    The points are those read back, so it holds their rounding too.
-    """
-    share = np.linspace(0.0, 1.0, LOOKS + 1)
-    between = t[:-1, None] + np.diff(t)[:, None] * share
-    curve = section.points(between.reshape(-1)).reshape(*between.shape, 2)
-    start, step = points[:-1, None, :], np.diff(points, axis=0)[:, None, :]
-    length = np.hypot(step[..., 0], step[..., 1])
-    off = curve - start
-    across = np.abs(off[..., 0] * step[..., 1] - off[..., 1] * step[..., 0]) / length
-    return float(across.max())
+def _between(points: FloatArray) -> FloatArray:
+    """Return places along the straight lines between points."""
+    share = np.arange(LOOKS)[:, None] / LOOKS
+    lines = points[:-1, None, :] + np.diff(points, axis=0)[:, None, :] * share
+    return np.concatenate([lines.reshape(-1, 2), points[-1:]])
 
 
-def _csv_text(points: FloatArray, chord: float, _sheet: Sheet) -> str:
-    rows = points * chord / MILLIMETRE
-    return "x_mm,y_mm\n" + "".join(f"{x:.6f},{y:.6f}\n" for x, y in rows + 0.0)
+def _write_csv(path: Path, curve: BuiltCurve, _label: Label) -> None:
+    rows = "".join(f"{x:.6f},{y:.6f}\n" for x, y in curve.points + 0.0)
+    path.write_text(f"x_mm,y_mm\n{rows}", encoding="utf-8")
 
 
-def _read_csv(path: Path, chord: float) -> FloatArray:
-    return np.loadtxt(path, delimiter=",", skiprows=1) * MILLIMETRE / chord
+def _read_csv(path: Path, _chord: float) -> FloatArray:
+    return _between(np.loadtxt(path, delimiter=",", skiprows=1))
 
 
-def _txt_text(points: FloatArray, _chord: float, sheet: Sheet) -> str:
-    head = "".join(f"# {line}\n" for line in (sheet.title, *sheet.remarks))
-    return head + "".join(f"{x:.9f} {y:.9f}\n" for x, y in points + 0.0)
+def _write_txt(path: Path, curve: BuiltCurve, label: Label) -> None:
+    points = curve.points * (MILLIMETRE / curve.chord) + 0.0
+    head = "".join(f"# {line}\n" for line in label.lines())
+    rows = "".join(f"{x:.9f} {y:.9f}\n" for x, y in points)
+    path.write_text(head + rows, encoding="utf-8")
 
 
-def _read_txt(path: Path, _chord: float) -> FloatArray:
-    return np.loadtxt(path, comments="#")
+def _read_txt(path: Path, chord: float) -> FloatArray:
+    return _between(np.loadtxt(path, comments="#") * (chord / MILLIMETRE))
 
 
-@dataclass(frozen=True)
-class Form:
-    """How a kind of file is written and read back."""
+def _write_json(path: Path, curve: BuiltCurve, label: Label) -> None:
+    built = {
+        "chord_mm": curve.chord / MILLIMETRE,
+        "points_mm": curve.points.tolist(),
+        "spline": {
+            "degree": DEGREE,
+            "knots_mm": curve.knots.tolist(),
+            "control_points_mm": curve.controls.tolist(),
+        },
+    }
+    document = {"title": label.title, "facts": dict(label.facts), **label.document, "built": built}
+    text = json.dumps(plain(document), indent=1, allow_nan=False, ensure_ascii=False)
+    path.write_text(f"{text}\n", encoding="utf-8")
 
-    text: Callable[[FloatArray, float, Sheet], str]
-    read: Callable[[Path, float], FloatArray]
+
+def _read_json(path: Path, _chord: float) -> FloatArray:
+    spline = json.loads(path.read_text(encoding="utf-8"))["built"]["spline"]
+    knots, controls = np.array(spline["knots_mm"]), np.array(spline["control_points_mm"])
+    return sampled(knots, controls, spline["degree"])
 
 
-FORMS: Mapping[str, Form] = MappingProxyType(
-    {".csv": Form(_csv_text, _read_csv), ".txt": Form(_txt_text, _read_txt)}
+_FORMS: Mapping[str, _Form] = MappingProxyType(
+    {
+        ".csv": _Form(_write_csv, _read_csv, smooth=False),
+        ".txt": _Form(_write_txt, _read_txt, smooth=False),
+        ".dxf": _Form(write_dxf, lambda path, _: read_dxf(path), smooth=True),
+        ".svg": _Form(write_svg, lambda path, _: read_svg(path), smooth=True),
+        ".json": _Form(_write_json, _read_json, smooth=True),
+    }
 )
-"""Suffix -> form: .csv in millimetres at the real chord, .txt in chords."""

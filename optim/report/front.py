@@ -46,17 +46,11 @@ def front_document(run: Run, judgement: Judgement) -> Document:
     """
     rows = judgement.front().tolist()
     shown = ([BASELINE] if run.evaluations else []) + rows
-    entries = _entries(run, judgement, shown)
+    entries = design_entries(run, judgement, shown)
     failed = _endings(run)
     return {
         "study": judgement.study,
-        "objectives": [
-            {"name": aim.name, "sense": aim.sense, "unit": aim.unit} for aim in judgement.aims
-        ],
-        "constraints": [
-            {"name": one.name, "limit": one.limit, "unit": one.unit, "kind": one.kind}
-            for one in judgement.limits
-        ],
+        **wanted(judgement),
         "evaluated": run.evaluations,
         "feasible": int(np.count_nonzero(judgement.violation == 0.0)),
         "failed": {name: n for name, n in failed.items() if name != Outcome.CONVERGED.label},
@@ -70,13 +64,27 @@ def front_document(run: Run, judgement: Judgement) -> Document:
     }
 
 
+def wanted(judgement: Judgement) -> dict[str, list[Document]]:
+    """Return what is asked of a design: ``objectives`` and ``constraints``."""
+    return {
+        "objectives": [
+            {"name": aim.name, "sense": aim.sense, "unit": aim.unit} for aim in judgement.aims
+        ],
+        "constraints": [
+            {"name": one.name, "limit": one.limit, "unit": one.unit, "kind": one.kind}
+            for one in judgement.limits
+        ],
+    }
+
+
 def _endings(run: Run) -> dict[str, int]:
     """How many designs ended in each way, by the label of the outcome."""
     counts = Counter(run.design_outcomes.tolist())
     return {Outcome(code).label: counts[code] for code in sorted(counts)}
 
 
-def _entries(run: Run, judgement: Judgement, rows: list[int]) -> list[Document]:
+def design_entries(run: Run, judgement: Judgement, rows: list[int]) -> list[Document]:
+    """Return all that is recorded of some evaluations, one entry of ``designs`` each."""
     if not rows:
         return []
     panels = parse_study(run.header.resolved_text).evaluator.panels

@@ -98,7 +98,7 @@ def _unlike(header: RunHeader, conditions: tuple[Condition, ...]) -> list[Fault]
             faults.append(Fault(said, path))
             continue
         row = flown[condition.name]
-        unlike = [key for key in FLOWN if not _same(stated[key], row[key])]
+        unlike = [key for key in FLOWN if not same(stated[key], row[key])]
         if unlike:
             words = ", ".join(f"{key} {_word(row[key])} not {_word(stated[key])}" for key in unlike)
             said = f"the run has flown this condition otherwise ({words}); accepted is the same."
@@ -106,7 +106,8 @@ def _unlike(header: RunHeader, conditions: tuple[Condition, ...]) -> list[Fault]
     return faults
 
 
-def _same(a: object, b: object) -> bool:
+def same(a: object, b: object) -> bool:
+    """Return whether two values of a condition are the same but for rounding."""
     if isinstance(a, float) and isinstance(b, float):
         return math.isclose(a, b, rel_tol=SAME, abs_tol=SAME)
     return a == b

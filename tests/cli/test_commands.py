@@ -4,11 +4,13 @@ import csv
 import io
 import json
 import math
+from dataclasses import replace
 
 import numpy as np
+import pypdfium2
 import pytest
 
-from optim.archive.reader import open_run
+from optim.archive.reader import equality_digest, open_run
 from optim.geometry.curve import cosine_parameters
 from optim.geometry.naca import naca_section
 from optim.problem.problem import Problem
@@ -286,7 +288,8 @@ class TestExport:
         points = np.loadtxt(path, delimiter=",", skiprows=1)
         assert done.code == 0
         assert points[:, 0].max() == pytest.approx(212.0, abs=1e-6)
-        assert "mm of the curve" in done.err
+        assert "micrometres of the exact curve" in done.err
+        assert "Caution:" in done.err
         assert "warning" not in done.err
         assert done.out == ""
 
@@ -296,3 +299,138 @@ class TestExport:
         assert "0.906 mm thick, not the 0.800 mm" in done.err
         points = np.loadtxt(path, delimiter=",", skiprows=1)
         assert points[0, 1] - points[-1, 1] == pytest.approx(0.8 * 240.0 / 212.0, abs=1e-5)
+
+    def test_json_has_what_the_archive_holds(self, command, run_file, tmp_path):
+        path = tmp_path / "section.json"
+        assert command("export", f"{run_file}#3", "--output", path).code == 0
+        document = json.loads(path.read_text(), parse_constant=pytest.fail)
+        with open_run(run_file) as run:
+            recorded, header = run.evaluation(3), run.header
+            assert document["digests"]["datasets"] == run.digests()
+        assert document["digests"]["run"] == equality_digest(run_file)
+        assert list(document["curve"]["variables"].values()) == recorded["designs"].tolist()
+        assert document["study"]["text"] == header.study_text
+        assert document["provenance"] == dict(header.provenance)
+        margins = [one["margin"] for one in document["constraints"].values()]
+        assert margins == recorded["margins"].tolist()
+        survey = document["conditions"]["survey"]
+        assert survey["flown"]["speed"] == 18.0
+        names = header.condition_quantity_names
+        assert survey["found"]["cd"] == recorded["quantities"][0][names.index("cd")]
+
+    def test_points_and_spacing_are_those_asked_for(self, command, run_file, tmp_path):
+        path = tmp_path / "section.csv"
+        words = ("export", f"{run_file}#3", "--output", path, "--points", "40", "--spacing", "even")
+        assert command(*words).code == 0
+        assert len(path.read_text().splitlines()) == 1 + 79
+
+    def test_few_points_for_a_spline_are_warned_of(self, command, run_file, tmp_path):
+        path = tmp_path / "section.dxf"
+        done = command("export", f"{run_file}#3", "--output", path, "--points", "20")
+        assert "warning: 20 points a side are few" in done.err
+        assert "warning" not in command("export", f"{run_file}#3", "--output", path).err
+
+
+@pytest.mark.usefixtures("closed_form")
+class TestSheet:
+    @pytest.fixture(autouse=True)
+    def swept(self, monkeypatch):
+        """Let sweeps fly the closed-form flows."""
+
+        def sweep(evaluator, point, angles):
+            return evaluator.flows([replace(point, alpha=a, cl=None) for a in angles]), None
+
+        monkeypatch.setattr("optim.aerodynamics.sweep.sweep", sweep)
+        monkeypatch.setattr("optim.cli.handover.prepare_kernels", lambda: None)
+
+    def test_is_two_pages_where_it_is_asked_for(self, command, run_file, tmp_path):
+        path = tmp_path / "design.pdf"
+        done = command("sheet", f"{run_file}#3", "--output", path)
+        printed = pypdfium2.PdfDocument(path)
+        pages = [page.get_textpage().get_text_bounded() for page in printed]
+        printed.close()
+        assert done.code == 0
+        assert done.out == ""
+        assert "Caution:" in done.err
+        assert len(pages) == 2
+        assert all("no substitute for tunnel and flight test" in page for page in pages)
+        assert "the order of maximum lifts is more trustworthy" in " ".join(pages[1].split())
+
+    def test_is_beside_the_run_under_its_name_unless_told(self, command, recorded_run, tmp_path):
+        run_file = recorded_run.record(tmp_path / "glider.h5", generations=1)
+        done = command("sheet", f"{run_file}#3")
+        assert str(tmp_path / "glider-3.pdf") in done.err
+        assert (tmp_path / "glider-3.pdf").read_bytes().startswith(b"%PDF")
+
+    def test_dollars_and_brackets_in_a_name_are_text(self, command, recorded_run, tmp_path):
+        run_file = recorded_run.record(tmp_path / "a$x_{$b^.h5", generations=1)
+        assert command("sheet", f"{run_file}#3").code == 0
+
+
+class TestCompare:
+    @pytest.fixture(autouse=True)
+    def flown(self, closed_form, monkeypatch):
+        """Let comparisons fly the closed-form flows."""
+
+        def sweep(evaluator, point, angles):
+            return evaluator.flows([replace(point, alpha=a, cl=None) for a in angles]), None
+
+        monkeypatch.setattr("optim.validation.flight.sweep", sweep)
+        monkeypatch.setattr("optim.cli.comparison.prepare_kernels", lambda: None)
+        return closed_form
+
+    def test_json_has_a_value_a_column_in_every_row(self, command, run_file, tmp_path):
+        path = tmp_path / "tunnel.csv"
+        path.write_text("# reynolds: 2e5\nalpha,cl,cd\n0,0.25,0.01\n4,0.6,0.011\n")
+        words = (run_file, f"{run_file}#3", "naca:2412", path)
+        done = command("compare", *words, "--json", "--plot", tmp_path / "all.png")
+        document = json.loads(done.out, parse_constant=pytest.fail)
+        assert done.code == 0
+        kinds = [one["kind"] for one in document["columns"]]
+        assert kinds == ["run", "design", "section", "measurement"]
+        assert all(len(row["values"]) == 4 for row in document["rows"])
+        assert len(document["residuals"]) == 2 * 2
+        with open_run(run_file) as run:
+            assert document["hypervolume"]["union"] == run.read("hypervolume")[-1]
+        assert (tmp_path / "all.png").stat().st_size > 1000
+
+    def test_text_names_what_each_letter_is_and_has_the_cautions(self, command, run_file):
+        done = command("compare", run_file, "naca:2412")
+        assert done.out.splitlines()[:2] == [f"A  run {run_file}", "B  section naca:2412"]
+        assert "at survey" in done.out
+        assert "hypervolume of all fronts together" in done.out
+        assert "Caution:" in done.out
+
+    def test_shapes_alone_say_how_to_fly_them(self, command):
+        done = command("compare", "naca:2412", "naca:4412")
+        assert done.code == 0
+        assert "only shapes are compared" in done.err
+        assert "thickness" in done.out
+
+    def test_measurements_alone_are_refused(self, command, tmp_path):
+        path = tmp_path / "tunnel.csv"
+        path.write_text("# reynolds: 2e5\nalpha,cl\n0,0.25\n4,0.6\n")
+        done = command("compare", path, path)
+        assert done.code == 2
+        assert "accepted is a section or a design" in done.err
+
+    def test_exported_points_are_a_section_and_no_polar(self, command, run_file, tmp_path):
+        """Read back, they are turned to the chord line of the point farthest from the edge."""
+        path = tmp_path / "section.csv"
+        command("export", f"{run_file}#3", "--output", path)
+        done = command("compare", f"{run_file}#3", path, "--json")
+        measures = {row["quantity"]: row["values"] for row in json.loads(done.out)["rows"]}
+        kept, read = measures["thickness"]
+        assert read == pytest.approx(kept, abs=1e-5)
+
+    def test_fault_of_a_polar_has_its_place(self, command, tmp_path):
+        path = tmp_path / "tunnel.csv"
+        path.write_text("# reynolds: 2e5\nalpha,cl\n0,0.25\n4,much\n")
+        done = command("compare", "naca:2412", path)
+        assert done.code == 2
+        assert done.err.startswith(f"{path}:4:2: cl:")
+
+    def test_damaged_archive_is_exit_4(self, command, run_file, tmp_path):
+        path = tmp_path / "damaged.h5"
+        path.write_bytes(run_file.read_bytes()[:-4096])
+        assert command("compare", path, run_file).code == 4

@@ -51,6 +51,8 @@ def test_looking_at_a_run_waits_for_no_compiler_and_no_search(process, run_file,
         ("front", run_file, "--json"),
         ("status", run_file, "--json"),
         ("export", f"{run_file}#3", "--output", tmp_path / "section.csv"),
+        ("export", f"{run_file}#3", "--output", tmp_path / "section.dxf"),
+        ("compare", run_file, run_file),
         ("fit", "naca:2412", "--shape", "cst"),
         ("template",),
         ("schema",),
@@ -59,7 +61,11 @@ def test_looking_at_a_run_waits_for_no_compiler_and_no_search(process, run_file,
 
 
 @pytest.mark.parametrize(
-    "words", [("--help",), ("check", "--help"), ("run", "--help"), ("validate", "--help")]
+    "words",
+    [
+        ("--help",),
+        *[(verb, "--help") for verb in ("check", "run", "validate", "export", "sheet", "compare")],
+    ],
 )
 def test_help_loads_no_library_of_numbers(process, words):
     heavy = {*HEAVY, "numpy", "scipy", "h5py", "yaml", "pint", "rich"}  # typer has pydantic

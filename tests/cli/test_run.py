@@ -151,3 +151,10 @@ def test_sweep_has_both_ends_and_what_it_says_as_a_whole(tmp_path):
     assert points[0]["transition_upper"] == pytest.approx(points[-1]["transition_lower"], abs=1e-3)
     code, out, _ = finished(tmp_path, *words, "4:-4:-2")
     assert json.loads(out)["results"][0]["points"] == points[::-1]
+
+
+def test_sheet_of_a_recorded_design_is_flown_and_printed(folder):
+    code, out, err = finished(folder, "sheet", "results/small.h5#0", "--output", "sheet.pdf")
+    assert (code, out) == (0, "")
+    assert "two A4 pages about small, design 0" in err
+    assert (folder / "sheet.pdf").read_bytes().startswith(b"%PDF")
