@@ -268,16 +268,13 @@ def turning_state(
 
 
 @njit
-def turning_rise(
-    x0: FloatArray, x1: FloatArray, x2: FloatArray, f: float, own: float, k: int
-) -> float:
+def turning_rise(x0: FloatArray, x1: FloatArray, x2: FloatArray, own: float, k: int) -> float:
     """Return the slope by f of `turning_state` for a thickness (k = 0, 1) of the share `own`."""
     chord = x2[k] - x1[k]
     if own == 0.0:
-        return chord
+        return float(chord)
     tangent = (x1[k] - x0[k]) * (x2[XI] - x1[XI]) / (x1[XI] - x0[XI])
-    turned = INTO_NEXT * f ** (INTO_NEXT - 1) * f * (chord - tangent)
-    return own * tangent + (1.0 - own) * chord + turned
+    return float(tangent + (1.0 + INTO_NEXT) * (1.0 - own) * (chord - tangent))
 
 
 @njit
@@ -374,7 +371,7 @@ def transition_interval(
             thickness = k < 2
             J[row, UP + k] += (weights[1] if thickness else 1.0 - f) * by_middle
             J[row, DOWN + k] += (weights[2] if thickness else f) * by_middle
-            rise = turning_rise(x0, x1, x2, f, weights[3] if thickness else 0.0, k)
+            rise = turning_rise(x0, x1, x2, weights[3] if thickness else 0.0, k)
             by_f[row] += by_middle * rise
             if thickness:
                 before[row, k] = weights[0] * by_middle

@@ -5,8 +5,8 @@ from __future__ import annotations
 from itertools import groupby
 from typing import Any
 
-from optim.cli.console import CAUTION, CAUTION_FRONT, CAUTION_LIFT
 from optim.cli.output import number, table
+from optim.report.cautions import CAUTION, CAUTION_FRONT, CAUTION_LIFT
 from optim.report.units import as_read
 
 Document = dict[str, Any]

@@ -10,17 +10,10 @@ from typing import TYPE_CHECKING, Annotated
 
 import typer
 
-from optim.cli.console import (
-    CAUTION,
-    CAUTION_FRONT,
-    CAUTION_LIFT,
-    NOT_MODELLED,
-    misuse,
-    prepare_kernels,
-    say,
-)
+from optim.cli.console import misuse, prepare_kernels, say
 from optim.cli.section_argument import record_of
 from optim.errors import Fault, InputError
+from optim.report.cautions import CAUTION, CAUTION_FRONT, CAUTION_LIFT, NOT_MODELLED
 
 if TYPE_CHECKING:
     from optim.report.design_record import DesignRecord

@@ -15,7 +15,6 @@ from optim.cli.output import number, table, write_csv, write_json
 from optim.cli.section_argument import RecordedDesign, recorded_design, section_of
 from optim.cli.studies import AsJson, Plot
 from optim.errors import Fault, InputError
-from optim.report.cautions import CAUTION
 
 if TYPE_CHECKING:
     from optim.aerodynamics.evaluator import SectionEvaluator
