@@ -26,6 +26,12 @@ CAUTION_FRONT = (
 )
 """Printed with every front."""
 
+BANDS = (
+    "Behind ± stands the band that holds about four in five of the published measurements of "
+    "sections left out of its fit; a section unlike all of those may be further off."
+)
+"""Printed wherever bands are shown."""
+
 NOT_MODELLED = "Not modelled: roughness, gaps, rain, ice, unsteady and three-dimensional effects."
 """Printed with every analysis."""
 

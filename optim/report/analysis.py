@@ -119,7 +119,7 @@ def analyse(
         points = [replace(point, reynolds=reynolds) for point in asked.points]
         (flows, derived), *others = [_flown(one, points, asked) for one in evaluators]
         grid = _grid(flows, *[found for found, _ in others]) if others else None
-        said = None if derived is None else derived_fields(derived)
+        said = None if derived is None else derived_fields(derived, flows)
         answers.append(Analysed(section, flows, said, grid))
     return answers
 
