@@ -6,7 +6,7 @@ import math
 from collections.abc import Iterator
 from typing import Any
 
-from optim.cli.console import BANDS, CAUTION, CAUTION_LIFT, NOT_MODELLED
+from optim.cli.console import BANDS, CAUTION, CAUTION_LIFT, NOT_MODELLED, SECOND_SOLUTION
 from optim.cli.front_text import flat_point
 from optim.cli.output import banded, number, table
 from optim.outcomes import Outcome
@@ -17,8 +17,6 @@ _HEAD = [
     "alpha deg", "cl", "cd", "cl/cd", "cm c/4", "x_cp", "cp min", "upper x/c", "lower x/c",
     "separated", "outcome or flags",
 ]  # fmt: skip
-
-_GOOD = Outcome.CONVERGED.label
 
 
 def analysis_text(results: list[Document], *, surface: bool) -> str:
@@ -31,6 +29,8 @@ def analysis_text(results: list[Document], *, surface: bool) -> str:
     parts += [f"{one.label}: {one.sentence}" for one in failed]
     flagged = {flag for result in results for point in result["points"] for flag in point["flags"]}
     parts += [f"{flag}: {sentence}" for flag, sentence in FLAGS.items() if flag in flagged]
+    if any(point["second_solution"] for result in results for point in result["points"]):
+        parts.append(SECOND_SOLUTION)
     if any(point["band"] for result in results for point in result["points"]):
         parts.append(BANDS)
     parts += [CAUTION, NOT_MODELLED]
@@ -82,8 +82,15 @@ def _point_row(point: Document) -> list[str]:
         _transition(point, "upper"),
         _transition(point, "lower"),
         _separation(point),
-        " ".join(point["flags"]) if point["outcome"] == _GOOD else point["outcome"],
+        _last_cell(point),
     ]
+
+
+def _last_cell(point: Document) -> str:
+    """How the flow ended if not well, else in what it is out of the ordinary."""
+    if point["outcome"] != Outcome.CONVERGED.label:
+        return str(point["outcome"])
+    return " ".join([*point["flags"], *(["second_solution"] if point["second_solution"] else [])])
 
 
 def _transition(point: Document, side: str) -> str:

@@ -32,6 +32,12 @@ BANDS = (
 )
 """Printed wherever bands are shown."""
 
+SECOND_SOLUTION = (
+    "second_solution: the equations have another solution at that condition, whose drag differs by "
+    "more than 0.5 %; which of the two a real flow takes depends on how it gets there."
+)
+"""Printed where an analysis found a second solution."""
+
 NOT_MODELLED = "Not modelled: roughness, gaps, rain, ice, unsteady and three-dimensional effects."
 """Printed with every analysis."""
 
