@@ -7,24 +7,38 @@ from collections.abc import Iterator
 from typing import Any
 
 from optim.cli.front_text import flat_point
-from optim.cli.output import number, table
+from optim.cli.output import banded, number, table
 from optim.outcomes import Outcome
-from optim.report.cautions import CAUTION, CAUTION_LIFT, NOT_MODELLED
+from optim.report.cautions import (
+    BANDS,
+    CAUTION,
+    CAUTION_LIFT,
+    NOT_MODELLED,
+    SECOND_SOLUTION,
+)
 
 Document = dict[str, Any]
 
 _HEAD = [
     "alpha deg", "cl", "cd", "cl/cd", "cm c/4", "x_cp", "cp min", "upper x/c", "lower x/c",
-    "separated", "outcome",
+    "separated", "outcome or flags",
 ]  # fmt: skip
 
 
 def analysis_text(results: list[Document], *, surface: bool) -> str:
     """Return the results as tables, each with its section, and what the outcomes mean."""
+    from optim.aerodynamics.coverage import FLAGS  # noqa: PLC0415  --help loads no numpy
+
     parts = [part for result in results for part in _result(result, surface=surface)]
     outcomes = {point["outcome"] for result in results for point in result["points"]}
     failed = [one for one in Outcome if one.label in outcomes and one is not Outcome.CONVERGED]
     parts += [f"{one.label}: {one.sentence}" for one in failed]
+    flagged = {flag for result in results for point in result["points"] for flag in point["flags"]}
+    parts += [f"{flag}: {sentence}" for flag, sentence in FLAGS.items() if flag in flagged]
+    if any(point["second_solution"] for result in results for point in result["points"]):
+        parts.append(SECOND_SOLUTION)
+    if any(point["band"] for result in results for point in result["points"]):
+        parts.append(BANDS)
     parts += [CAUTION, NOT_MODELLED]
     if any(result.get("derived") for result in results):
         parts.append(CAUTION_LIFT)
@@ -63,19 +77,26 @@ def _state(point: Document) -> str:
 
 
 def _point_row(point: Document) -> list[str]:
+    forms = {
+        "alpha_deg": ".2f", "cl": ".4f", "cd": ".5f", "lift_to_drag": ".1f", "cm_quarter": ".4f",
+    }  # fmt: skip
+    band = point["band"] or {}
     return [
-        number(point["alpha_deg"], ".2f"),
-        number(point["cl"], ".4f"),
-        number(point["cd"], ".5f"),
-        number(point["lift_to_drag"], ".1f"),
-        number(point["cm_quarter"], ".4f"),
+        *[banded(point[name], band.get(name), form) for name, form in forms.items()],
         number(point["x_cp"], ".3f"),
         number(point["cp_min"], ".2f"),
         _transition(point, "upper"),
         _transition(point, "lower"),
         _separation(point),
-        "" if point["outcome"] == Outcome.CONVERGED.label else point["outcome"],
+        _last_cell(point),
     ]
+
+
+def _last_cell(point: Document) -> str:
+    """How the flow ended if not well, else in what it is out of the ordinary."""
+    if point["outcome"] != Outcome.CONVERGED.label:
+        return str(point["outcome"])
+    return " ".join([*point["flags"], *(["second_solution"] if point["second_solution"] else [])])
 
 
 def _transition(point: Document, side: str) -> str:
@@ -109,9 +130,14 @@ _DERIVED = {
 def _derived_table(derived: Document) -> str:
     width = max(len(title) for title in _DERIVED.values())
     return "".join(
-        f"{title.ljust(width)}  {_derived_cell(derived[name])}\n"
+        f"{title.ljust(width)}  {_derived_cell(derived[name])}{_width(derived, name)}\n"
         for name, title in _DERIVED.items()
     )
+
+
+def _width(derived: Document, name: str) -> str:
+    width = (derived["band"] or {}).get(name)
+    return "" if width is None else f" ±{width:.2g}"
 
 
 def _derived_cell(value: Any) -> str:  # noqa: ANN401  a word, a number, a range or nothing

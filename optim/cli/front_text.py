@@ -7,7 +7,7 @@ from typing import Any
 
 from optim.cli.console import failures
 from optim.cli.output import number, table
-from optim.report.cautions import CAUTION, CAUTION_FRONT, CAUTION_LIFT
+from optim.report.cautions import BANDS, CAUTION, CAUTION_FRONT, CAUTION_LIFT
 from optim.report.units import as_read
 
 Document = dict[str, Any]
@@ -66,17 +66,26 @@ def _design_row(title: str, design: Document, document: Document) -> list[str]:
     found = design["objectives"]
     return [
         f"{better}{title}",
-        *[as_read(found[aim["name"]], aim["unit"]) for aim in document["objectives"]],
         *[
-            _limit_cell(design["constraints"][limit["name"]], limit["unit"])
+            as_read(found[aim["name"]], aim["unit"]) + _width(design, aim)
+            for aim in document["objectives"]
+        ],
+        *[
+            _limit_cell(design["constraints"][limit["name"]], limit["unit"], _width(design, limit))
             for limit in document["constraints"]
         ],
     ]
 
 
-def _limit_cell(one: Document, unit: str) -> str:
+def _limit_cell(one: Document, unit: str, width: str) -> str:
     margin = number(one["margin"], "+.2f")
-    return f"{as_read(one['value'], unit)} ({margin}{'*' if one['active'] else ''})"
+    return f"{as_read(one['value'], unit)}{width} ({margin}{'*' if one['active'] else ''})"
+
+
+def _width(design: Document, named: Document) -> str:
+    """Return the half-width of the band of an objective or a limit, if it has one."""
+    width = design["band"].get(named["name"])
+    return "" if width is None else f" ±{as_read(float(f'{width:.2g}'), named['unit'])}"
 
 
 def _better_everywhere(design: Document, document: Document) -> bool:
@@ -90,6 +99,8 @@ def _better_everywhere(design: Document, document: Document) -> bool:
 def _notes(document: Document, kept: dict[str, float], run_file: Path) -> list[str]:
     better = [one for one in document["designs"] if _better_everywhere(one, document)]
     notes = ["In brackets the margin to a limit over its scale: negative is missed, * is active."]
+    if document["baseline"]["band"]:
+        notes.append(BANDS)
     if better:
         notes.append(f"+ beats the baseline in every objective: {len(better)} designs.")
     if document["designs"]:
@@ -118,6 +129,7 @@ def front_rows(document: Document) -> list[Document]:
 def _flat(design: Document) -> Document:
     row: Document = {"id": design["id"], "generation": design["generation"]}
     row |= design["objectives"]
+    row |= {f"band:{name}": design["band"].get(name) for name in design["objectives"]}
     for name, one in design["constraints"].items():
         row |= {f"limit:{name}": one["value"], f"margin:{name}": one["margin"]}
     row |= {f"variable:{name}": value for name, value in design["variables"].items()}
@@ -127,12 +139,18 @@ def _flat(design: Document) -> Document:
 
 
 def flat_point(point: Document, prefix: str = "") -> Document:
-    """Return the fields of a point as cells: a bubble becomes its start and its end."""
+    """Return the fields of a point as cells: a bubble becomes its start and its end, and so on."""
+    from optim.aerodynamics.accuracy import BANDED  # noqa: PLC0415  --help loads no numpy
+
     row: Document = {}
     for name, value in point.items():
         if name in {"bubble_upper", "bubble_lower"}:
             start, end = value or (None, None)
             row |= {f"{prefix}{name}_start": start, f"{prefix}{name}_end": end}
-        elif name not in {"band", "second_solution", "surface"}:
+        elif name == "band":
+            row |= {f"{prefix}band_{one}": (value or {}).get(one) for one in BANDED}
+        elif name == "flags":
+            row[f"{prefix}flags"] = " ".join(value)
+        elif name != "surface":
             row[f"{prefix}{name}"] = value
     return row

@@ -52,6 +52,16 @@ def table(head: Sequence[str], rows: Sequence[Sequence[str]]) -> str:
     )
 
 
+def banded(value: float | None, width: float | None, form: str) -> str:
+    """Return a number with the half-width of its band, if it has one.
+
+    >>> banded(0.6644, 0.0522, ".3f"), banded(0.6644, None, ".3f")
+    ('0.664 ±0.052', '0.664')
+    """
+    told = number(value, form)
+    return told if width is None or told == "-" else f"{told} ±{width:{form}}"
+
+
 def number(value: float | None, form: str = ".4g") -> str:
     """Return a number for a table, a dash where there is none."""
     return "-" if value is None or math.isnan(value) else f"{value:{form}}"

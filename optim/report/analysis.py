@@ -71,12 +71,16 @@ class Analysed:
         What a sweep says as a whole.
     grid : list of dict or None
         The comparison with half and double the panels, one entry a point.
+    second : tuple or None
+        Whether a second solution was found nearby, one entry a point, None where there is no answer
+        to compare with; None if it was not looked for.
     """
 
     section: Section
     flows: tuple[SectionFlow, ...]
     derived: Document | None = None
     grid: list[Document] | None = None
+    second: tuple[bool | None, ...] | None = None
 
     def document(self, *, surface: bool = False) -> Document:
         """Return the entry of ``analyse --json``.
@@ -87,6 +91,8 @@ class Analysed:
             With the distributions along the surface.
         """
         points = [point_fields(flow) for flow in self.flows]
+        for point, found in zip(points, self.second or (), strict=self.second is not None):
+            point["second_solution"] = found
         if surface:
             for point, flow in zip(points, self.flows, strict=True):
                 point["surface"] = None if flow.surface is None else surface_fields(flow.surface)
@@ -119,8 +125,9 @@ def analyse(
         points = [replace(point, reynolds=reynolds) for point in asked.points]
         (flows, derived), *others = [_flown(one, points, asked) for one in evaluators]
         grid = _grid(flows, *[found for found, _ in others]) if others else None
-        said = None if derived is None else derived_fields(derived)
-        answers.append(Analysed(section, flows, said, grid))
+        said = None if derived is None else derived_fields(derived, flows)
+        second = None if asked.inviscid else _second_solutions(evaluators[0], flows)
+        answers.append(Analysed(section, flows, said, grid, second))
     return answers
 
 
@@ -139,6 +146,17 @@ def _flown(
     rising, derived = sweep(evaluator, points[0], angles)
     falls = points[0].alpha != angles[0]
     return tuple(reversed(rising) if falls else rising), derived
+
+
+def _second_solutions(
+    evaluator: SectionEvaluator, flows: Sequence[SectionFlow]
+) -> tuple[bool | None, ...]:
+    """Return whether each flow has a second solution nearby; None where it has no answer."""
+    from optim.aerodynamics.second_solution import second_solution  # noqa: PLC0415  as in `_flown`
+
+    return tuple(
+        second_solution(evaluator, flow) is not None if flow.converged else None for flow in flows
+    )
 
 
 def _grid(

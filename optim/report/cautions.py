@@ -22,3 +22,15 @@ CAUTION_FRONT = (
 
 NOT_MODELLED = "Not modelled: roughness, gaps, rain, ice, unsteady and three-dimensional effects."
 """Printed with every analysis."""
+
+BANDS = (
+    "Behind ± stands the band that holds about four in five of the published measurements of "
+    "sections left out of its fit; a section unlike all of those may be further off."
+)
+"""Printed wherever bands are shown."""
+
+SECOND_SOLUTION = (
+    "second_solution: the equations have another solution at that condition, whose drag differs by "
+    "more than 0.5 %; which of the two a real flow takes depends on how it gets there."
+)
+"""Printed where an analysis found a second solution."""

@@ -7,8 +7,11 @@ that both come out under the same names with the same numbers.
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any
 
+from optim.aerodynamics.accuracy import band, derived_band
+from optim.aerodynamics.coverage import flags
 from optim.aerodynamics.operating_point import SectionFlow, SideState, Surface
 from optim.geometry.section import Section
 
@@ -69,7 +72,8 @@ def point_fields(flow: SectionFlow) -> Document:
         "iterations": flow.iterations,
         "residual": flow.residual,
         "second_solution": None,
-        "band": None,
+        "band": band(flow),
+        "flags": list(flags(flow)),
     }
 
 
@@ -86,10 +90,10 @@ def _side_fields(side: str, state: SideState) -> Document:
     }
 
 
-def derived_fields(derived: Derived) -> Document:
-    """Return what a sweep says as a whole."""
+def derived_fields(derived: Derived, flows: Sequence[SectionFlow]) -> Document:
+    """Return what a sweep of flows says as a whole."""
     span = derived.slope_range
-    return {
+    stated: Document = {
         "alpha_zero_lift_deg": math.degrees(derived.alpha_zero_lift),
         "lift_slope_per_deg": math.radians(derived.lift_slope),
         "slope_range_deg": None if span is None else [math.degrees(end) for end in span],
@@ -102,6 +106,7 @@ def derived_fields(derived: Derived) -> Document:
         "x_cp_range": _pair(derived.x_cp_range),
         "low_drag_range": _pair(derived.low_drag_range),
     }
+    return stated | {"band": derived_band(stated, flows)}
 
 
 def _pair(span: tuple[float, float] | None) -> list[float] | None:

@@ -6,6 +6,7 @@ is read from the archive.
 
 from __future__ import annotations
 
+import math
 from collections import Counter
 from collections.abc import Mapping
 from typing import Any
@@ -46,7 +47,7 @@ def front_document(run: Run, judgement: Judgement) -> Document:
     """
     rows = judgement.front().tolist()
     shown = ([BASELINE] if run.evaluations else []) + rows
-    entries = design_entries(run, judgement, shown)
+    entries = [one | {"band": _bands(one)} for one in design_entries(run, judgement, shown)]
     failed = _endings(run)
     return {
         "study": judgement.study,
@@ -106,6 +107,38 @@ def design_entries(run: Run, judgement: Judgement, rows: list[int]) -> list[Docu
 
 def _named(names: list[str] | tuple[str, ...], values: FloatArray) -> dict[str, float]:
     return dict(zip(names, values.tolist(), strict=True))
+
+
+BANDED_AS = {"cl_max": "cl", "nose_down_moment": "cm_quarter"}
+"""Quantity -> the one of a flow whose band it has, where the names differ."""
+
+
+def _bands(entry: Document) -> dict[str, float]:
+    """Return the half-widths of the bands of a design's objectives and limits, by name.
+
+    What is not stated of flows alone has none. Of several conditions the widest, as a share, is
+    taken: the errors of one section at neighbouring conditions are alike.
+    """
+    values = {name: one["value"] for name, one in entry["constraints"].items()}
+    found = {}
+    for name, value in (values | entry["objectives"]).items():
+        quantity, _, where = name.partition("@")
+        quantity = BANDED_AS.get(quantity, quantity)
+        names = where.partition(":")[0].split("+")
+        points = [entry["conditions"].get(one) for one in names]
+        widths = [_width(point, quantity, value, len(points) > 1) for point in points]
+        if not any(math.isnan(width) for width in widths):
+            found[name] = max(widths)
+    return found
+
+
+def _width(point: Document | None, quantity: str, value: float, several: bool) -> float:  # noqa: FBT001
+    """Half-width of a quantity's band; of a mean of several conditions, by one's share of it."""
+    band = None if point is None else point["band"]
+    if point is None or band is None or quantity not in band:
+        return math.nan
+    width = float(band[quantity])
+    return width * abs(value / point[quantity]) if several else width
 
 
 def _limits(judgement: Judgement, row: int) -> dict[str, Document]:

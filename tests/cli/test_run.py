@@ -118,12 +118,12 @@ POINT = {
     "cd_pressure", "cm_quarter", "x_cp", "lift_to_drag", "stagnation_x", "stagnation_side",
     "cp_min", "cp_min_x", "transition_upper", "transition_lower", "transition_kind_upper",
     "transition_kind_lower", "separation_upper", "separation_lower", "bubble_upper",
-    "bubble_lower", "outcome", "iterations", "residual", "second_solution", "band",
+    "bubble_lower", "outcome", "iterations", "residual", "second_solution", "band", "flags",
 }  # fmt: skip
 DERIVED = {
     "alpha_zero_lift_deg", "lift_slope_per_deg", "slope_range_deg", "cl_max",
     "alpha_cl_max_deg", "aerodynamic_centre_x", "cm_aerodynamic_centre", "cm_zero_lift",
-    "stall", "x_cp_range", "low_drag_range",
+    "stall", "x_cp_range", "low_drag_range", "band",
 }  # fmt: skip
 SECTION = {
     "name", "thickness", "thickness_x", "camber", "camber_x", "area", "nose_radius",

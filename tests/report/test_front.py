@@ -6,6 +6,8 @@ import numpy as np
 import pytest
 
 from optim.archive.reader import open_run
+from optim.cli.console import BANDS
+from optim.cli.front_text import front_rows, front_text
 from optim.errors import StudyError
 from optim.outcomes import Outcome
 from optim.problem.pareto import hypervolume
@@ -207,3 +209,33 @@ def test_document_is_plain_data(run):
     """Everything but not-a-number, which the edge turns into null, is JSON."""
     text = json.dumps(front_document(run, as_recorded(run)))
     assert "paper-plane" in text
+
+
+def test_bands_stand_beside_objectives_and_limits(run):
+    """Of one condition the band of its flow; of several the widest share; sections have none."""
+    document = front_document(run, as_recorded(run))
+    for one in [document["baseline"], *document["designs"]]:
+        points = one["conditions"]
+        assert set(one["band"]) == {
+            "lift_to_drag@survey+loiter", "nose_down_moment@survey", "cl_max@slow",
+        }  # fmt: skip
+        assert one["band"]["cl_max@slow"] == points["slow"]["band"]["cl"]
+        assert one["band"]["nose_down_moment@survey"] == points["survey"]["band"]["cm_quarter"]
+        shares = [
+            points[name]["band"]["lift_to_drag"] / points[name]["lift_to_drag"]
+            for name in ("survey", "loiter")
+        ]
+        value = one["objectives"]["lift_to_drag@survey+loiter"]
+        width = one["band"]["lift_to_drag@survey+loiter"]
+        assert width == pytest.approx(value * max(shares))
+        assert points["slow"]["band"]["cl"] < 0.1 * points["slow"]["cl"]
+
+
+def test_text_shows_the_bands(run, run_file):
+    document = front_document(run, as_recorded(run))
+    text = front_text(document, {}, run_file)
+    width = document["baseline"]["band"]["cl_max@slow"]
+    assert f"±{width:.2g} " in text
+    assert BANDS in text
+    row = front_rows(document)[0]
+    assert row["band:nose_down_moment@survey"] == row["survey:band_cm_quarter"]

@@ -64,6 +64,9 @@ class ClosedForm:
     def flows(self, points):
         return [self._flow(point) for point in points]
 
+    def solve(self, point, near=None, *, patient=True):  # noqa: ARG002  the evaluator's form
+        return self._flow(point), None
+
     def maximum_lift(self, point):
         if self.thickness < 0.105:
             return SectionFlow(point, Outcome.NO_PEAK, self.panels, iterations=99)
