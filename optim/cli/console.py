@@ -9,10 +9,45 @@ from typing import TextIO
 from optim.errors import Fault, InputError
 
 
+def printable(text: str) -> str:
+    r"""Return a text in which nothing can steer a terminal, line breaks and tabs kept.
+
+    What a study, a file or its name holds may be written by anyone: characters that do not print
+    (control characters, changes of direction, halves of a pair) become ``\uXXXX``, which a JSON
+    document reads as the same character.
+
+    >>> print(printable("a \x1b[2J b \u202e c"))
+    a \u001b[2J b \u202e c
+    """
+    if text.isprintable():
+        return text
+    return "".join(
+        letter if letter.isprintable() or letter in "\n\t" else _escaped(letter) for letter in text
+    )
+
+
+def _escaped(letter: str) -> str:
+    units = letter.encode("utf-16-be", "surrogatepass").hex()
+    return "".join(f"\\u{units[k : k + 4]}" for k in range(0, len(units), 4))
+
+
 def say(line: str) -> None:
-    """Write one line to standard error."""
-    sys.stderr.write(f"{line}\n")
-    sys.stderr.flush()
+    """Write one line to standard error; if nobody reads it any more, it is lost.
+
+    A run goes on without its listener: the terminal it was started in may be closed.
+    """
+    try:
+        sys.stderr.write(printable(line).replace("\n", "\\n") + "\n")
+        sys.stderr.flush()
+    except OSError:
+        speak_to_nobody()
+
+
+def speak_to_nobody() -> None:
+    """Send standard error nowhere, so that what is still waiting to be written is no fault."""
+    nowhere = os.open(os.devnull, os.O_WRONLY)
+    os.dup2(nowhere, sys.stderr.fileno())
+    os.close(nowhere)
 
 
 def misuse(message: str) -> InputError:
@@ -33,7 +68,8 @@ def show(text: str) -> None:
         If nobody reads it any more.
     """
     try:
-        sys.stdout.write(text if text.endswith("\n") else f"{text}\n")
+        shown = printable(text)
+        sys.stdout.write(shown if shown.endswith("\n") else f"{shown}\n")
         sys.stdout.flush()
     except BrokenPipeError as error:
         raise ReaderGoneError from error

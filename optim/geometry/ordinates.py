@@ -40,6 +40,12 @@ LEAST_AREA = 1e-4
 REPEATED = 1e-9
 """Neighbours closer than this are one point [box lengths]."""
 
+SIZES = (1e-6, 1e6)
+"""Length of the box in the unit of the file: a kilometre in millimetres is the largest."""
+
+FARTHEST = 1e6
+"""A section farther than this from the origin has lost its last digits [box lengths]."""
+
 SMALLEST_CHANGE = 1e-5
 """Smoothing below this is not worth a word: files have five decimals [chords]."""
 
@@ -107,6 +113,16 @@ def _checked(xy: FloatArray) -> tuple[FloatArray, float]:
         raise refused(
             "A section is longer along x than high; "
             f"the points span {width:.4g} along x and {height:.4g} along y."
+        )
+    if not SIZES[0] <= width <= SIZES[1]:
+        raise refused(
+            f"The length of a section must be {SIZES[0]:g} to {SIZES[1]:g} in the unit of its "
+            f"file; found {width:.4g}."
+        )
+    if np.abs(xy).max() > FARTHEST * width:
+        raise refused(
+            f"The section is {width:.4g} long and {np.abs(xy).max():.4g} from the origin: its "
+            "shape is lost in rounding; move it to the origin."
         )
     return xy, width
 

@@ -21,6 +21,7 @@ import numpy as np
 from scipy.interpolate import CubicSpline
 
 from optim.arrays import FloatArray, IntArray
+from optim.errors import Fault, SectionError
 from optim.geometry.chordline import chord_line
 from optim.geometry.curve import Curve
 from optim.geometry.graduation import graduated
@@ -77,6 +78,11 @@ def through(points: FloatArray) -> tuple[SplineCurve, float, int]:
         The farthest that it moves a point [chords].
     left_out : int
         Number of points too close to their neighbours to tell a slope [-].
+
+    Raises
+    ------
+    SectionError
+        If the points do not run from the edge to the nose and back.
     """
     edge = 0.5 * (points[0] + points[-1])
     reach = np.hypot(*(points - edge).T)
@@ -121,12 +127,24 @@ def _parameters(curve: SplineCurve, nose: float, chord: float) -> FloatArray:
     slope = np.sqrt(2.0 * np.clip(1.0 / max(bend, 1e-9), *NOSE_RADII))
     tau = _root_like((length - at_nose) / chord, float(slope))
     upper, lower = -tau[0], tau[-1]
+    if not min(upper, lower) > 0.0:
+        raise _no_way_back()
     # t = p tau + q tau**2 puts both ends at one without a bend at the nose
     p = (upper / lower + lower / upper) / (upper + lower)
     q = (1.0 / lower - p) / lower
     t = p * tau + q * tau**2
     t[0], t[-1] = -1.0, 1.0
+    if not np.abs(t).max() <= 1.0:
+        raise _no_way_back()
     return np.asarray(t, dtype=np.float64)
+
+
+def _no_way_back() -> SectionError:
+    message = (
+        "The points do not run from the edge around the nose and back to the edge: one side is "
+        "much shorter than the other, or a point lies far off."
+    )
+    return SectionError([Fault(message)])
 
 
 def _lengths(curve: SplineCurve, start: FloatArray, end: FloatArray) -> FloatArray:

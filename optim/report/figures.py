@@ -39,6 +39,7 @@ STYLE: Any = {
     "axes.axisbelow": True,
     "legend.frameon": False,
     "svg.hashsalt": "sectionwright",
+    "text.parse_math": False,  # a name with a dollar in it is no formula
 }
 """How every figure looks; typed loosely, for the library lists hundreds of keys as its type."""
 

@@ -21,7 +21,7 @@ import numpy as np
 
 from optim.arrays import FloatArray
 from optim.errors import Fault, SectionError
-from optim.study.units import UnitError, shown
+from optim.study.units import UnitError, legible, shown
 from optim.study.values import Value
 
 FEWEST_POINTS = 10
@@ -32,6 +32,9 @@ MOST_POINTS = 10_000
 
 MOST_BYTES = 1 << 20
 """Room for `MOST_POINTS` lines of two numbers in full precision, and for comments."""
+
+LARGEST = 1e9
+"""No section has a coordinate beyond this, in whatever unit; products of two stay finite."""
 
 JUMP = 0.5
 """A step in x larger than this part of the chord leads from one block to the next."""
@@ -51,7 +54,7 @@ class Coordinates(NamedTuple):
         x and y in the file's own unit, one loop from the upper side of the trailing edge around
         the nose to the lower side of the edge.
     title : str
-        First line that is no comment and no point; empty if there is none.
+        First line that is no comment and no point, made legible; empty if there is none.
     notes : tuple of str
         What was changed, a sentence each.
     """
@@ -105,6 +108,8 @@ def parse_coordinates(text: str, file: str = "coordinates") -> Coordinates:
         message = f"the file holds {found}; {ACCEPTED}, at least {FEWEST_POINTS}."
         raise SectionError([Fault(message, file=file)])
     points = np.array(rows, dtype=np.float64)
+    if np.abs(points).max() > LARGEST:
+        raise _refuse(file, f"a coordinate is beyond {LARGEST:g}")
     for arrange in (_columns, _loop, _upper_first, _distinct):
         points = arrange(points, notes, file)
     points.flags.writeable = False
@@ -155,7 +160,7 @@ def _rows(text: str, file: str) -> tuple[str, list[tuple[float, float]]]:
             continue
         pair = _pair(line)
         if pair is None and not rows:
-            title = title or line
+            title = title or legible(line)
             continue
         if pair is None or not all(map(math.isfinite, pair)):
             raise _refuse(file, f"the line {shown(line)} is no pair of finite numbers", number)

@@ -156,7 +156,7 @@ def _read_baseline(tree: Tree, file: str, folder: Path | None) -> list[Fault]:
         return []
     path: yaml_text.Path = ("section", "baseline")
     source = None if folder is None else folder / baseline
-    if source is None or not source.exists():
+    if source is None or not _is_file(source):
         where = "" if folder is None else f" in {folder}"
         hint = re.sub(r"(?i)^naca[ _-]?", "naca:", baseline)
         hint = f"; did you mean {hint}?" if NACA.fullmatch(hint) else ""
@@ -171,6 +171,13 @@ def _read_baseline(tree: Tree, file: str, folder: Path | None) -> list[Fault]:
         return [replace(fault, path=path) for fault in error.faults]
     section["baseline_coordinates"] = coordinate_text([(float(x), float(y)) for x, y in points])
     return []
+
+
+def _is_file(path: Path) -> bool:
+    try:
+        return path.is_file()
+    except OSError:  # a name that the system does not take
+        return False
 
 
 def _validated(tree: Tree, file: str) -> tuple[Study | None, list[Fault]]:

@@ -29,8 +29,9 @@ MOST_BYTES = 1 << 19
 MOST_ALIASES = 100
 """Aliases ``*name`` in one text; more is no study."""
 
-MOST_VALUES = 20_000
-"""Values in one text, aliases counted as often as they are used."""
+MOST_VALUES = 5_000
+"""Values in one text, aliases and merged keys counted as often as they are used; a large study has
+a few hundred, and a text of this many is read in half a second."""
 
 DEEPEST = 20
 """Levels of nesting; a study needs five."""
@@ -256,12 +257,19 @@ class _Walk:
         self.fault(message, node, path)
         self.tree.unread.add(path)
 
-    def value(self, node: Node, path: Path, above: tuple[Node, ...]) -> Any:  # noqa: ANN401
-        """Return the value of a node; `above` are the nodes that hold it."""
+    def count(self, node: Node) -> None:
+        """Count what is looked at, be it new or not, and stop where that is too much.
+
+        Merged mappings that merge each other twice hold few keys and take for ever.
+        """
         self.values += 1
         if self.values > MOST_VALUES:
             message = f"the text holds more than {MOST_VALUES} values; that is no study."
             raise StudyError([Fault(message, (), self.file, *_start(node))])
+
+    def value(self, node: Node, path: Path, above: tuple[Node, ...]) -> Any:  # noqa: ANN401
+        """Return the value of a node; `above` are the nodes that hold it."""
+        self.count(node)
         key = self.tree.places.keys.setdefault(path, _start(node))
         self.tree.places.values[path] = _start(node) if isinstance(node, ScalarNode) else key
         if node in above:
@@ -311,6 +319,7 @@ class _Walk:
                 self.fault("<< merges mappings of keys such as *name only.", node, path)
                 continue
             for key, value in node.value:
+                self.count(key)
                 if key.tag == _MERGE:
                     self.merge(value, data, path, (*above, node))
                 elif isinstance(key, ScalarNode) and key.value not in data:

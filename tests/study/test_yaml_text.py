@@ -184,17 +184,25 @@ def bomb(levels: int) -> str:
     return "\n".join(lines) + "\n"
 
 
+def merge_bomb(levels: int) -> str:
+    """Mappings that each merge the one before twice: few keys, 2 to the power of `levels` looks."""
+    lines = ["m0: &m0 {k: 1}"]
+    lines += [f"m{i}: &m{i} {{<<: [*m{i - 1}, *m{i - 1}]}}" for i in range(1, levels)]
+    return "\n".join(lines) + "\n"
+
+
 @pytest.mark.parametrize(
     ("text", "fragment"),
     [
-        (bomb(9), "more than 20000 values"),
+        (bomb(9), "more than 5000 values"),
         ("a: &a x\nb: [" + "*a, " * (MOST_ALIASES + 1) + "]\n", "more than 100 aliases"),
         ("a: " + "[" * 500 + "]" * 500 + "\n", "more than 20 levels of nesting"),
         ("a: &a [*a]\n", "holds itself"),
+        (merge_bomb(40), "more than 5000 values"),
         ("a: &a {<<: *a}\n", "merges mappings"),
-        ("a: [" + "x, " * 30_000 + "]\n", "more than 20000 values"),
+        ("a: [" + "x, " * 30_000 + "]\n", "more than 10000 keys and values"),
     ],
-    ids=["bomb", "aliases", "depth", "itself", "merged-itself", "many"],
+    ids=["bomb", "aliases", "depth", "itself", "merge-bomb", "merged-itself", "many"],
 )
 def test_no_text_can_take_the_machine(text, fragment) -> None:
     start = time.perf_counter()
