@@ -62,14 +62,14 @@ class Spread:
 
 
 SPREADS = {
-    "cl": Spread("lift", 0.079, 0.42, 1.00, 1.03),
-    "cd": Spread("relative", 0.11, 3.27, 1.33, 1.00),
-    "cm_quarter": Spread("absolute", 0.0084, 1.34, 1.05, 1.00),
+    "cl": Spread("lift", 0.074, 0.45, 1.00, 1.04),
+    "cd": Spread("relative", 0.11, 3.28, 1.65, 1.00),
+    "cm_quarter": Spread("absolute", 0.0084, 1.38, 1.05, 1.00),
     "cl_max": Spread("relative", 0.036, 1.00, 1.00, 1.00),
     "alpha_zero_lift_deg": Spread("absolute", 0.27, 1.00, 1.00, 1.00),
     "lift_slope_per_deg": Spread("relative", 0.043, 1.00, 1.00, 1.00),
-    "aerodynamic_centre_x": Spread("absolute", 0.007, 1.00, 1.00, 1.00),
-    "cm_aerodynamic_centre": Spread("absolute", 0.0045, 1.00, 1.00, 1.00),
+    "aerodynamic_centre_x": Spread("absolute", 0.0071, 1.00, 1.00, 1.00),
+    "cm_aerodynamic_centre": Spread("absolute", 0.0046, 1.00, 1.00, 1.00),
 }
 """Quantity -> its band; written by tests/derivations/error_bands.py. A factor of 1 is also one for
 which too few sections speak."""

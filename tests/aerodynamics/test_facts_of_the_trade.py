@@ -226,6 +226,7 @@ thickness it comes out at 0.219 to 0.230; measured for 4421 is 0.238 (test of th
 the layers take too much off at the edge of thick sections. Not settled."""
 
 MOMENT_MISSED = {
+    ("0021", 0.35): (0.005, 0.006),
     ("2412", 0.35): (0.005, 0.008),
     ("4412", 0.0): (0.005, 0.009),
     ("4412", 0.35): (0.005, 0.018),
