@@ -6,13 +6,13 @@ import numpy as np
 import pytest
 
 from optim.archive.reader import open_run
-from optim.cli.console import BANDS
 from optim.cli.front_text import front_rows, front_text
 from optim.errors import StudyError
 from optim.outcomes import Outcome
 from optim.problem.pareto import hypervolume
 from optim.problem.problem import Problem
 from optim.report.archived import RecordedConditions, peak_sought, picked
+from optim.report.cautions import BANDS
 from optim.report.fields import point_fields
 from optim.report.front import ACTIVE_MARGIN, front_document
 from optim.report.judgement import as_recorded

@@ -4,6 +4,7 @@ import math
 from dataclasses import replace
 
 import numpy as np
+from scipy.interpolate import CubicSpline
 
 from optim.aerodynamics.operating_point import OperatingPoint, SectionFlow, SideState, Surface
 from optim.archive.journal import Journal
@@ -45,6 +46,12 @@ search: {population: 24, generations: 3, seed: 5}
 POPULATION, GENERATIONS = 24, 3
 
 
+def greatest(values):
+    """The top of a curve through values at even steps: of the section, whatever its panels."""
+    steps = np.arange(len(values))
+    return float(CubicSpline(steps, values)(np.linspace(0, steps[-1], 40 * len(steps))).max())
+
+
 class ClosedForm:
     """Flows that follow from thickness, camber and the point by made-up formulas.
 
@@ -58,8 +65,8 @@ class ClosedForm:
         upper, lower = nodes[half::-1, 1], nodes[half:, 1]
         self.nodes = nodes
         self.panels = len(nodes) - 1
-        self.thickness = float(np.max(upper - lower))
-        self.camber = float(np.max(upper + lower)) / 2.0
+        self.thickness = greatest(upper - lower)
+        self.camber = greatest(upper + lower) / 2.0
 
     def flows(self, points):
         return [self._flow(point) for point in points]
