@@ -103,8 +103,10 @@ def test_one_step_leaves_the_second_order(case, kind, solved):
     solution = solved(case)
     before, coarse = residuals(solution, 1e-5, kind, seed=3)
     assert before > 5e-7
-    _, fine = residuals(solution, 1e-6, kind, seed=3)
-    assert fine < 5e-11 or math.log10(coarse / fine) > 1.8
+    start, fine = residuals(solution, 1e-6, kind, seed=3)
+    # terms of second order that cancel at one of the sizes leave no slope to tell; a slope of an
+    # equation that is wrong by a share of 1e-5 would leave that share of the disturbance
+    assert fine < max(5e-11, 1e-5 * start) or math.log10(coarse / fine) > 1.8
 
 
 @pytest.mark.parametrize("case", list(CASES))
